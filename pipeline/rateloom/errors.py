@@ -8,7 +8,9 @@
     ├── StoreError        the store cannot be used
     │   ├── StoreBusyError    another run holds it
     │   └── StoreVersionError it was written by a newer version
-    └── OutputError       the output folder cannot be written
+    ├── ClusterError      the cluster cannot be used, or not any more
+    ├── OutputError       the output folder cannot be written
+    └── UnknownCodeError  no finding has the code that was asked for
 """
 
 from dataclasses import dataclass
@@ -82,5 +84,31 @@ class StoreVersionError(StoreError):
     """The store was written by a newer version of the program."""
 
 
+class ClusterError(RateloomError):
+    """The cluster cannot be used, or not any more."""
+
+
 class OutputError(RateloomError):
     """The output folder cannot be written."""
+
+
+class UnknownCodeError(RateloomError):
+    """No finding has the code that was asked for.
+
+    Parameters
+    ----------
+    code
+        As it was asked for.
+    closest
+        Codes there are that look like it.
+    """
+
+    def __init__(self, code: str, closest: tuple[str, ...]) -> None:
+        super().__init__(code, closest)
+        self.code = code
+        self.closest = closest
+
+    def __str__(self) -> str:
+        """Name the code and the closest ones."""
+        hint = f" Closest: {', '.join(self.closest)}." if self.closest else ""
+        return f"no finding is called '{self.code}'.{hint}"
