@@ -1,0 +1,126 @@
+"""The bytes of one output file as text with line numbers: plain, gzip, bzip2 or xz, told by their first bytes."""
+
+import bz2
+import gzip
+import lzma
+import zlib
+from bisect import bisect_right
+from collections.abc import Callable
+from dataclasses import dataclass
+from itertools import accumulate
+from pathlib import Path
+
+from rateloom.errors import CalculationError
+
+COMPRESSIONS: tuple[tuple[bytes, str, Callable[[bytes], bytes]], ...] = (
+    (b"\x1f\x8b", "gzip", gzip.decompress),
+    (b"BZh", "bzip2", bz2.decompress),
+    (b"\xfd7zXZ\x00", "xz", lzma.decompress),
+)
+WIDE_TEXT = (b"\xff\xfe", b"\xfe\xff")
+CONTROL_CHARACTERS = dict.fromkeys((*range(9), *range(11, 32), 133, 8232, 8233), " ")
+BINARY = 0.01
+"""Share of zero bytes above which a file is no text; some programs print a few of them."""
+BROKEN_COMPRESSION = (OSError, EOFError, ValueError, zlib.error, lzma.LZMAError)
+
+
+@dataclass(frozen=True, slots=True)
+class Output:
+    """The text of one output file."""
+
+    name: str
+    """File name for messages."""
+    text: str
+    """Lines end with a line feed alone."""
+    starts: tuple[int, ...]
+    """Position at which each line begins, ascending."""
+
+    def lines(self) -> list[str]:
+        """Give the lines, each with its line feed."""
+        return split(self.text)
+
+    def line(self, position: int) -> int:
+        """Give the number, counted from 1, of the line that holds a position."""
+        return bisect_right(self.starts, position)
+
+    def position(self, line: int) -> int:
+        """Give the position at which a line, counted from 1, begins; the end of the text beyond the last one."""
+        return self.starts[line - 1] if line <= len(self.starts) else len(self.text)
+
+
+def load(path: str) -> bytes:
+    """Read the bytes of a file.
+
+    Raises
+    ------
+    CalculationError
+        The file is missing or cannot be read.
+    """
+    try:
+        return Path(path).read_bytes()
+    except FileNotFoundError as error:
+        msg = f"{path}: there is no such file. Check the path, relative to the folder `calculations` of the job file."
+        raise CalculationError(msg) from error
+    except IsADirectoryError as error:
+        msg = f"{path}: this is a folder. Name one output file in it."
+        raise CalculationError(msg) from error
+    except OSError as error:
+        msg = f"{path}: the file cannot be read ({error.strerror})."
+        raise CalculationError(msg) from error
+
+
+def open_output(name: str, data: bytes) -> Output:
+    """Decompress and decode an output file.
+
+    Raises
+    ------
+    CalculationError
+        The file is empty, binary, or its compressed data are broken.
+    """
+    text = normal_lines(decode(name, decompress(name, data)))
+    if not text.strip():
+        msg = f"{name}: the file is empty. Run the calculation again or correct the path."
+        raise CalculationError(msg)
+    lengths = [len(line) for line in split(text)]
+    return Output(name, text, (0, *accumulate(lengths[:-1])))
+
+
+def decompress(name: str, data: bytes) -> bytes:
+    """Undo one or more layers of compression."""
+    for magic, label, expand in COMPRESSIONS:
+        if data.startswith(magic):
+            try:
+                return decompress(name, expand(data))
+            except BROKEN_COMPRESSION as error:
+                msg = f"{name}: the {label} data are damaged or cut short ({error}). Copy or compress the file again."
+                raise CalculationError(msg) from error
+    return data
+
+
+def decode(name: str, data: bytes) -> str:
+    """Turn bytes into text; programs print UTF-8 or, in names and units, Latin-1."""
+    if data.startswith(WIDE_TEXT):
+        return data.decode("utf-16", errors="replace")
+    if data.count(b"\x00") > BINARY * len(data):
+        msg = (
+            f"{name}: this is a binary file, not the text output of a program. "
+            "Name the text output (a checkpoint or wave function file cannot be read)."
+        )
+        raise CalculationError(msg)
+    try:
+        return data.decode("utf-8-sig")
+    except UnicodeDecodeError:
+        return data.decode("latin-1")
+
+
+def normal_lines(text: str) -> str:
+    """Write every line end as a line feed; other control characters (form feeds of old programs) become spaces."""
+    text = text.replace("\r\n", "\n").replace("\r", "\n")
+    return text.translate(CONTROL_CHARACTERS)
+
+
+def split(text: str) -> list[str]:
+    """Split at line feeds alone, which are kept."""
+    lines = text.split("\n")
+    last = lines.pop()
+    return [line + "\n" for line in lines] + ([last] if last else [])

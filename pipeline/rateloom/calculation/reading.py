@@ -1,0 +1,50 @@
+"""One output file to one record: bytes, text, lines, cclib, record, checks."""
+
+from rateloom.calculation.output import Output, load, open_output
+from rateloom.calculation.programs import PROGRAMS, recognise
+from rateloom.calculation.record import Calculation
+from rateloom.errors import CalculationError
+
+
+def read_calculation(path: str, data: bytes | None = None) -> Calculation:
+    """Read one output file of a quantum-chemistry program.
+
+    Parameters
+    ----------
+    path : str
+        Path of the output, plain or compressed with gzip, bzip2 or xz; it stands in messages.
+    data : bytes, optional
+        Content of the file where the caller has read it already.
+
+    Returns
+    -------
+    Calculation
+        What the output says. Defects that do not keep it from being read are remarks of the record.
+
+    Raises
+    ------
+    CalculationError
+        The file is missing, empty, binary, damaged, of no known program, or reading it stops.
+    """
+    output = open_output(path, load(path) if data is None else data)
+    program = recognise(output.text)
+    if program is None:
+        raise unknown(output)
+    # cclib takes a second to load: commands that read no file shall not wait for it.
+    from rateloom.calculation.build import build
+    from rateloom.calculation.track import follow
+
+    mend = program.mend
+    lines = output.lines() if mend is None else [mend(line) for line in output.lines()]
+    track = follow(output, program, enumerate(lines, start=1))
+    return build(output, program, track)
+
+
+def unknown(output: Output) -> CalculationError:
+    """Say that no program is recognised."""
+    first = next((line.strip() for line in output.lines() if line.strip()), "")
+    names = ", ".join(program.name for program in PROGRAMS)
+    return CalculationError(
+        f"{output.name}: no known program printed this file (it begins {first[:60]!r}). Name the main output with "
+        f"its heading, of one of: {names}."
+    )
