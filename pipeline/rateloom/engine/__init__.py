@@ -1,1 +1,35 @@
-"""In work."""
+"""The engine: a graph of named pure stages, evaluated once and never again for equal inputs.
+
+Takes a graph of ``Node`` (built elsewhere), a table of ``Stage`` and a ``Store``; gives for every node the digest
+of its result and what was computed, reused or went wrong. Knows nothing of chemistry, job files or tables.
+"""
+
+from rateloom.engine.codec import decode, digest_of, encode
+from rateloom.engine.evaluate import Evaluation, Fault, evaluate
+from rateloom.engine.files import FileState, Fingerprints
+from rateloom.engine.schedule import Reason, Schedule, Status
+from rateloom.engine.stage import Node, Outcome, Stage, Task, build_graph, run_task
+from rateloom.engine.store import Store, open_store, read_store
+
+__all__ = [
+    "Evaluation",
+    "Fault",
+    "FileState",
+    "Fingerprints",
+    "Node",
+    "Outcome",
+    "Reason",
+    "Schedule",
+    "Stage",
+    "Status",
+    "Store",
+    "Task",
+    "build_graph",
+    "decode",
+    "digest_of",
+    "encode",
+    "evaluate",
+    "open_store",
+    "read_store",
+    "run_task",
+]
