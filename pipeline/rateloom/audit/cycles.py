@@ -1,0 +1,129 @@
+"""Cycles of reactions that lead back to the same molecules but not to the same energy.
+
+A cycle is a combination of reactions, forwards or backwards, that changes nothing once names of one molecule are
+merged. Of all cycles through a molecule with two names the one with the fewest steps is sought.
+"""
+
+from collections import defaultdict
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass
+
+import numpy as np
+from scipy.constants import N_A, kilo
+from scipy.optimize import LinearConstraint, milp
+from scipy.sparse import coo_array, hstack
+
+_NODES = 1_000  # of the search for whole numbers; beyond it the shortest cycle found so far is taken
+
+
+@dataclass(frozen=True, slots=True)
+class Balance:
+    """What a reaction changes."""
+
+    name: str
+    change: Mapping[str, int]
+    """Molecules formed less those consumed, by name of the species."""
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class OpenCycle:
+    """A cycle that does not close."""
+
+    first: str
+    second: str
+    """Two names of one molecule."""
+    steps: tuple[tuple[str, int], ...]
+    """(reaction, times forwards; negative backwards)"""
+    sum_kJ_per_mol: float  # noqa: N815 - the symbol of the unit
+
+    @property
+    def words(self) -> str:
+        """Write e.g. ``ch4-h + 2 h2-oh (backwards)``."""
+        parts = []
+        for name, times in self.steps:
+            count = "" if abs(times) == 1 else f"{abs(times)} "
+            parts.append(f"{count}{name}{' (backwards)' if times < 0 else ''}")
+        return " + ".join(parts)
+
+
+def open_cycles(
+    reactions: Sequence[Balance],
+    energies: Mapping[str, float],
+    molecules: Mapping[str, int],
+    limit_kJ_per_mol: float,
+) -> list[OpenCycle]:
+    """Find cycles whose reaction energies do not add up to zero.
+
+    Parameters
+    ----------
+    reactions : sequence of Balance
+        Of species whose energies are known.
+    energies : mapping of str to float
+        Ground-level energy by name of the species [J].
+    molecules : mapping of str to int
+        A number by name, the same for names of one molecule [1].
+    limit_kJ_per_mol : float
+        What counts as zero [kJ/mol].
+
+    Returns
+    -------
+    list of OpenCycle
+        One for each further name of a molecule, where reactions close a cycle through it.
+
+    References
+    ----------
+    .. [1] W. R. Smith, R. W. Missen, Chemical Reaction Equilibrium Analysis, Wiley, 1982, ch. 2, for the matrix of
+       stoichiometric coefficients (from memory).
+    """
+    used = {name for reaction in reactions for name in reaction.change}
+    names_of: dict[int, list[str]] = defaultdict(list)
+    for name in energies:
+        if name in used:
+            names_of[molecules[name]].append(name)
+    found = []
+    for first, *others in names_of.values():
+        for second in others:
+            if abs(energies[second] - energies[first]) * N_A / kilo <= limit_kJ_per_mol:
+                continue
+            times = _cycle_through(second, reactions, molecules)
+            if times is None:
+                continue
+            total = sum(
+                t * energies[n] * i for t, r in zip(times, reactions, strict=True) for n, i in r.change.items()
+            )
+            if abs(total) * N_A / kilo > limit_kJ_per_mol:
+                steps = tuple((r.name, t) for t, r in zip(times, reactions, strict=True) if t)
+                found.append(
+                    OpenCycle(first=first, second=second, steps=steps, sum_kJ_per_mol=float(total) * N_A / kilo)
+                )
+    return found
+
+
+def _cycle_through(name: str, reactions: Sequence[Balance], molecules: Mapping[str, int]) -> list[int] | None:
+    """How often each reaction runs in the shortest cycle that consumes a molecule under this name."""
+    entries: dict[tuple[int, int], int] = defaultdict(int)
+    for column, reaction in enumerate(reactions):
+        for species, number in reaction.change.items():
+            entries[molecules[species] + 1, column] += number
+            if species == name:
+                entries[0, column] += number
+    rows, columns = zip(*entries, strict=True)
+    compact = {row: place for place, row in enumerate(sorted(set(rows)))}  # row 0 is that of the name
+    matrix = coo_array(
+        (np.array(list(entries.values()), dtype=float), ([compact[row] for row in rows], columns)),
+        shape=(len(compact), len(reactions)),
+    ).tocsc()
+    least = np.zeros(len(compact))
+    least[0] = -np.inf
+    most = np.zeros(len(compact))
+    most[0] = -1.0
+    answer = milp(
+        np.ones(2 * len(reactions)),
+        constraints=LinearConstraint(hstack([matrix, -matrix]), least, most),
+        integrality=np.ones(2 * len(reactions), dtype=int),
+        options={"node_limit": _NODES},
+    )
+    if answer.x is None:
+        return None
+    both_ways = np.rint(answer.x).astype(int)
+    return (both_ways[: len(reactions)] - both_ways[len(reactions) :]).tolist()
