@@ -1,0 +1,102 @@
+"""Running a batch: evaluate the graph of a job, audit it, write the tables."""
+
+import time
+from collections import Counter
+from collections.abc import Iterable
+from pathlib import Path
+
+from rateloom.audit import SEVERITIES, Finding
+from rateloom.batch.evaluation import Evaluated, Progress, bring_up_to_date, crew
+from rateloom.batch.graph import WHOLE_JOB, graph_of
+from rateloom.batch.loading import load
+from rateloom.batch.stages import ReactionRows, SpeciesRows
+from rateloom.batch.summary import Summary
+from rateloom.batch.verdict import Verdict, verdict_of
+from rateloom.engine import Status, open_store
+from rateloom.job import Job
+from rateloom.output import changes_table, findings_table, provenance, read_file, table, write_files
+
+
+def run_job(path: str, *, output: str | None = None, workers: int = 1, progress: Progress) -> Summary:
+    """Bring the output folder of a job up to date.
+
+    Parameters
+    ----------
+    path
+        The job file.
+    output
+        Another output folder than the job names.
+    workers
+        Processes to compute with.
+    progress
+        Called after each node.
+
+    Returns
+    -------
+    Summary
+        What was delivered and what was computed.
+
+    Raises
+    ------
+    JobError, StoreError, OutputError
+        The job, the store or the folder cannot be used.
+    """
+    begun = time.monotonic()
+    job = load(path, output)
+    graph = graph_of(job)
+    folder = Path(job.output)
+    with open_store(folder) as store:
+        known_before = set(store.past())
+        wanted = (WHOLE_JOB, *graph.species_rows.values(), *graph.reaction_rows.values())
+        evaluated = bring_up_to_date(
+            graph, store, workers=crew(graph.nodes, store, workers), wanted=wanted, progress=progress
+        )
+        rows = {name: evaluated.value(node) for name, node in graph.reaction_rows.items()}
+        missing = {name: value is None for name, value in rows.items()}
+        verdict = verdict_of(job, evaluated.remarks(), missing)
+        tables = _tables(job, evaluated, verdict, rows)
+        computed, reused = evaluated.counts()
+        hashes = {path: state.sha256 for path, state in evaluated.files.states.items()}
+        tables["run.json"] = provenance(job.title, job.path, hashes, computed, reused)
+        tables["changes.csv"] = changes_table(read_file(folder, "rates.csv"), tables["rates.csv"])
+        write_files(folder, tables)
+        store.keep_only(set(evaluated.evaluation.keys.values()))
+    status = evaluated.evaluation.status
+    return Summary(
+        title=job.title,
+        output=job.output,
+        delivered=len(job.reactions) - len(verdict.withheld),
+        withheld=verdict.withheld,
+        findings=count_findings(verdict.findings),
+        computed=computed,
+        reused=reused,
+        renewed=tuple(sorted(n for n in known_before & set(status) if status[n] is Status.COMPUTED)),
+        faults=tuple(f"{fault.node}: {fault.detail}" for fault in evaluated.evaluation.faults),
+        seconds=time.monotonic() - begun,
+    )
+
+
+def _tables(job: Job, evaluated: Evaluated, verdict: Verdict, rows: dict[str, object]) -> dict[str, bytes]:
+    """Put together the tables of what is delivered, in the order of the job file."""
+    delivered = [
+        value for name, value in rows.items() if isinstance(value, ReactionRows) and name not in verdict.withheld
+    ]
+    species = [
+        value
+        for entity in job.species
+        if entity.name not in verdict.withheld_species
+        and isinstance(value := evaluated.value(evaluated.graph.species_rows[entity.name]), SpeciesRows)
+    ]
+    return {
+        "rates.csv": table("rates.csv", (value.rates for value in delivered)),
+        "arrhenius.csv": table("arrhenius.csv", (value.arrhenius for value in delivered)),
+        "species.csv": table("species.csv", (value.species for value in species)),
+        "equilibrium.csv": table("equilibrium.csv", (value.equilibrium for value in delivered)),
+        "audit.csv": findings_table(verdict.findings),
+    }
+
+
+def count_findings(findings: Iterable[Finding]) -> dict[str, int]:
+    """Count findings by severity, those that the job file accepts apart."""
+    tally = Counter("accepted" if finding.accepted_because else finding.severity for finding in findings)
+    return {severity: tally[severity] for severity in (*SEVERITIES, "accepted")}

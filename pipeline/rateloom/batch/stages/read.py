@@ -1,0 +1,30 @@
+"""Stage: one output file, or the numbers of a paper, to a calculation record."""
+
+from dataclasses import dataclass, replace
+
+from rateloom.calculation import Calculation, read_calculation
+from rateloom.engine import Outcome
+from rateloom.errors import CalculationError
+from rateloom.remarks import Remark
+
+
+@dataclass(frozen=True, slots=True)
+class Reading:
+    """How files are read."""
+
+
+def read(_options: Reading, path: str, data: bytes) -> Outcome:
+    """Read one output file."""
+    try:
+        calculation = read_calculation(path, data)
+    except CalculationError as error:
+        return unreadable(error.message)
+    return Outcome(replace(calculation, remarks=()), calculation.remarks)
+
+
+def unreadable(reason: str) -> Outcome:
+    """Remark on a file that cannot be opened or read."""
+    return Outcome(None, (Remark("calculation-not-readable", reason),))
+
+
+VALUE = Calculation
