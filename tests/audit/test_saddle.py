@@ -208,6 +208,15 @@ def test_without_displacements_and_hessian_it_says_so() -> None:
     assert verdict.expected == "C1-H5 to stretch and H5-O6 to shorten"
 
 
+@pytest.mark.parametrize("spoilt", [np.nan, 0.0])
+def test_displacements_that_are_no_motion_count_as_not_printed(spoilt: float) -> None:
+    saddle, reactants, products = CASES["exchange"]
+
+    verdict = judge_saddle(replace(saddle, displacements=np.full((1, 3, 3), spoilt)), reactants, products)
+
+    assert _codes(verdict) == ("inconclusive", ["mode-not-printed"])
+
+
 @pytest.mark.parametrize("frequencies", [None, np.array([300.0]), np.zeros(0)])
 def test_a_saddle_without_an_imaginary_mode_is_left_to_the_other_checks(frequencies: np.ndarray | None) -> None:
     saddle, reactants, products = CASES["exchange"]

@@ -9,7 +9,7 @@ from typing import TYPE_CHECKING
 
 import pytest
 
-from rateloom.engine import Evaluation, Fingerprints, Stage, Status, decode, digest_of, open_store, run_task
+from rateloom.engine import Evaluation, Stage, Status, decode, digest_of, open_store
 from rateloom.engine.workers import InProcess, Processes
 from rateloom.errors import StoreError
 from rateloom.remarks import Remark
@@ -276,6 +276,7 @@ def test_a_stage_that_kills_workers_twice_is_named_and_the_others_are_unharmed(t
     assert {n for n, s in evaluation.status.items() if s is not Status.COMPUTED} == {"killer"}
 
 
+@pytest.mark.long
 def test_two_killers_are_both_named(toy: "Toy") -> None:
     toy.chain(6)
     toy.add("killer 1", ["read 0"], mode="die")
@@ -489,30 +490,6 @@ def test_an_output_folder_removed_under_way_is_told(toy: "Toy") -> None:
 
     with pytest.raises(StoreError, match="was removed or replaced"):
         toy.run(progress=lambda _: shutil.rmtree(toy.output, ignore_errors=True))
-
-
-# One task
-
-
-def test_a_task_refuses_a_file_that_is_not_the_one_its_key_was_made_of(toy: "Toy") -> None:
-    from dataclasses import replace
-
-    from rateloom.engine import Task, encode
-
-    path = toy.write("a.txt", "1")
-    task = Task("a", "read", encode(toy_shift()), file=str(path), file_digest=Fingerprints({})[str(path)].sha256)
-
-    assert run_task(task, toy.stages).value  # type: ignore[union-attr]
-    changed = replace(task, file_data=b"2")
-    assert run_task(changed, toy.stages).why == "file-changed"  # type: ignore[union-attr]
-    gone = replace(task, file=str(path) + ".gone")
-    assert run_task(gone, toy.stages).why == "file-not-visible"  # type: ignore[union-attr]
-
-
-def toy_shift() -> object:
-    from toy_stages import Shift
-
-    return Shift()
 
 
 def test_the_value_of_a_task_has_the_digest_that_is_handed_on(toy: "Toy") -> None:

@@ -223,7 +223,9 @@ def test_mending_keeps_all_that_is_sound_and_the_notes(filled: Path) -> None:
         connection.execute("UPDATE contents SET value = 'x' WHERE digest = ?", (digest_of(results(1)[0][1]),))
     connection.close()
     with open_store(filled) as store:
+        store.put_notes({"of another room": b"kept"})
         assert store.mend() == 1
+        assert store.note("of another room") == b"kept"
         assert [store.value(k) for k, _, _ in results(200)] == [None] + [v for _, v, _ in results(200)[1:]]
         assert store.past()
         store.put(results(1))

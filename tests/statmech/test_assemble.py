@@ -184,15 +184,7 @@ def test_what_makes_no_species_says_why(record: Calculation, code: str) -> None:
 def test_several_defects_are_told_at_once() -> None:
     record = replace(WATER, frequencies_per_cm=None, energies_hartree={}, finished=False, converged=False)
 
-    assert codes(minimum(record)) == ["unfinished-calculation", "not-converged", "no-energy", "no-frequencies"]
-
-
-def test_either_file_can_be_unfinished() -> None:
-    assembly = minimum(WATER, replace(COUPLED, finished=False))
-
-    assert codes(assembly) == ["unfinished-calculation"]
-    assert assembly.remarks[0].value == "energy file"
-    assert assembly.species is not None
+    assert codes(minimum(record)) == ["no-energy", "no-frequencies"]
 
 
 def test_an_energy_of_other_atoms_makes_no_species() -> None:

@@ -1,19 +1,25 @@
 """Cycles of reactions that lead back to the same molecules but not to the same energy.
 
 A cycle is a combination of reactions, forwards or backwards, that changes nothing once names of one molecule are
-merged. Of all cycles through a molecule with two names the one with the fewest steps is sought.
+merged. Of all cycles through a molecule with two names the shortest is sought.
 """
 
 from collections import defaultdict
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
+from fractions import Fraction
+from math import lcm
 
 import numpy as np
 from scipy.constants import N_A, kilo
 from scipy.optimize import LinearConstraint, milp
 from scipy.sparse import coo_array, hstack
 
-_NODES = 1_000  # of the search for whole numbers; beyond it the shortest cycle found so far is taken
+from rateloom.arrays import FloatArray
+
+_LARGEST_DENOMINATOR = 12  # of the number of times a reaction runs
+_NOTHING = 1e-6
+_SHOWN = 8  # steps of a cycle that are written out
 
 
 @dataclass(frozen=True, slots=True)
@@ -32,7 +38,7 @@ class OpenCycle:
     first: str
     second: str
     """Two names of one molecule."""
-    steps: tuple[tuple[str, int], ...]
+    steps: tuple[tuple[str, float], ...]
     """(reaction, times forwards; negative backwards)"""
     sum_kJ_per_mol: float  # noqa: N815 - the symbol of the unit
 
@@ -40,9 +46,11 @@ class OpenCycle:
     def words(self) -> str:
         """Write e.g. ``ch4-h + 2 h2-oh (backwards)``."""
         parts = []
-        for name, times in self.steps:
-            count = "" if abs(times) == 1 else f"{abs(times)} "
+        for name, times in self.steps[:_SHOWN]:
+            count = "" if abs(times) == 1 else f"{abs(times):g} "
             parts.append(f"{count}{name}{' (backwards)' if times < 0 else ''}")
+        if len(self.steps) > _SHOWN:
+            parts.append(f"{len(self.steps) - _SHOWN} more reactions")
         return " + ".join(parts)
 
 
@@ -99,7 +107,7 @@ def open_cycles(
     return found
 
 
-def _cycle_through(name: str, reactions: Sequence[Balance], molecules: Mapping[str, int]) -> list[int] | None:
+def _cycle_through(name: str, reactions: Sequence[Balance], molecules: Mapping[str, int]) -> list[float] | None:
     """How often each reaction runs in the shortest cycle that consumes a molecule under this name."""
     entries: dict[tuple[int, int], int] = defaultdict(int)
     for column, reaction in enumerate(reactions):
@@ -117,13 +125,20 @@ def _cycle_through(name: str, reactions: Sequence[Balance], molecules: Mapping[s
     least[0] = -np.inf
     most = np.zeros(len(compact))
     most[0] = -1.0
+    # Without whole numbers the search stays a linear program, whose corners leave most reactions out.
     answer = milp(
         np.ones(2 * len(reactions)),
         constraints=LinearConstraint(hstack([matrix, -matrix]), least, most),
-        integrality=np.ones(2 * len(reactions), dtype=int),
-        options={"node_limit": _NODES},
     )
     if answer.x is None:
         return None
-    both_ways = np.rint(answer.x).astype(int)
-    return (both_ways[: len(reactions)] - both_ways[len(reactions) :]).tolist()
+    return _whole(answer.x[: len(reactions)] - answer.x[len(reactions) :])
+
+
+def _whole(times: FloatArray) -> list[float]:
+    """Multiply a cycle so that every reaction runs a whole number of times, if a small multiple does that."""
+    fractions = [Fraction(float(t)).limit_denominator(_LARGEST_DENOMINATOR) for t in times]
+    if max(abs(float(f) - t) for f, t in zip(fractions, times, strict=True)) > _NOTHING:
+        return [float(t) if abs(t) > _NOTHING else 0.0 for t in times]
+    multiple = lcm(*(fraction.denominator for fraction in fractions))
+    return [float(fraction * multiple) for fraction in fractions]

@@ -57,8 +57,7 @@ def imaginary_mode(calculation: Calculation) -> ImaginaryMode | None:
     frequency = lowest_frequency(calculation)
     if frequency is None or calculation.frequencies_per_cm is None:
         return None
-    printed_masses = calculation.masses_u
-    masses = atomic_masses(calculation.atoms) if printed_masses is None else printed_masses * ATOMIC_MASS
+    masses = _masses(calculation)
     printed = calculation.displacements
     if printed is not None and printed.shape == (len(calculation.frequencies_per_cm), len(calculation.atoms), 3):
         mode = printed[int(np.nanargmin(calculation.frequencies_per_cm))]
@@ -66,10 +65,20 @@ def imaginary_mode(calculation: Calculation) -> ImaginaryMode | None:
         mode = _from_hessian(calculation.hessian, masses, calculation.geometry_angstrom)
     else:
         return None
+    if not np.all(np.isfinite(mode)):
+        return None
     clean = without_rigid_motion(mode, masses, calculation.geometry_angstrom)
     if not np.linalg.norm(clean) > LEAST_LEFT * np.linalg.norm(mode):
         return None
     return ImaginaryMode(frequency, clean, masses)
+
+
+def _masses(calculation: Calculation) -> FloatArray:
+    """Masses of the program, or of the most abundant isotopes where it prints none or nonsense [kg]."""
+    printed = calculation.masses_u
+    if printed is None or printed.shape != (len(calculation.atoms),) or not np.all(printed > 0):
+        return atomic_masses(calculation.atoms)
+    return printed * ATOMIC_MASS
 
 
 def _from_hessian(hessian: FloatArray, masses: FloatArray, geometry_angstrom: FloatArray) -> FloatArray:

@@ -95,7 +95,7 @@ def read_geometries(output: Output, program: Program, track: Track) -> list[Entr
     geometries = [
         entry
         for entry in track.geometries()
-        if not inside(spans, output.position(entry.begin)) and np.shape(entry.value)[-1:] == (3,)
+        if not inside(spans, output.position(entry.begin)) and is_geometry(entry.value)
     ]
     if geometries:
         return geometries
@@ -103,6 +103,15 @@ def read_geometries(output: Output, program: Program, track: Track) -> list[Entr
     where = "is cut short before its geometry" if track.cut else "prints no geometry"
     msg = f"{output.name}: this {program.name} output {where}, so that nothing can be made of it. {advice}"
     raise CalculationError(msg)
+
+
+def is_geometry(value: object) -> bool:
+    """Tell whether a value holds three numbers an atom, as in a whole and undamaged table."""
+    try:
+        array = np.array(value, dtype=np.float64)
+    except (TypeError, ValueError):
+        return False
+    return array.ndim == 2 and array.shape[1] == 3 and len(array) > 0 and bool(np.isfinite(array).all())
 
 
 def choose_part(geometries: list[Entry], track: Track) -> Choice:

@@ -1,7 +1,7 @@
 """One output file to one record: bytes, text, lines, cclib, record, checks."""
 
 from rateloom.calculation.output import Output, load, open_output
-from rateloom.calculation.programs import PROGRAMS, recognise
+from rateloom.calculation.programs import PROGRAMS, Program, recognise
 from rateloom.calculation.record import Calculation
 from rateloom.errors import CalculationError
 
@@ -37,7 +37,18 @@ def read_calculation(path: str, data: bytes | None = None) -> Calculation:
     mend = program.mend
     lines = output.lines() if mend is None else [mend(line) for line in output.lines()]
     track = follow(output, program, enumerate(lines, start=1))
-    return build(output, program, track)
+    try:
+        return build(output, program, track)
+    except (ArithmeticError, AttributeError, LookupError, TypeError, ValueError) as error:
+        raise contradictory(output, program, error) from error
+
+
+def contradictory(output: Output, program: Program, error: Exception) -> CalculationError:
+    """Say that what was read does not fit together, as after damage to a file."""
+    return CalculationError(
+        f"{output.name}: the parts of this {program.name} output contradict each other ({type(error).__name__}: "
+        f"{str(error)[:120]}). If it was edited or joined from several files, take the original outputs one by one."
+    )
 
 
 def unknown(output: Output) -> CalculationError:

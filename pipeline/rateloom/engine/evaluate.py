@@ -6,8 +6,7 @@ from collections.abc import Callable, Iterable, Mapping
 from concurrent.futures import FIRST_COMPLETED, Future, wait
 from dataclasses import dataclass, field
 from pathlib import Path
-
-import networkx as nx
+from typing import TYPE_CHECKING
 
 from rateloom.engine.codec import digest_of
 from rateloom.engine.files import FileState, Fingerprints
@@ -18,6 +17,9 @@ from rateloom.engine.store import Store
 from rateloom.engine.values import NO_VALUE, DamagedResultError, Values
 from rateloom.engine.workers import Results, Workers
 from rateloom.errors import RateloomError, StoreError
+
+if TYPE_CHECKING:
+    import networkx as nx
 
 CHANGES_BORNE = 3
 """How often a file may change under way before it is given up."""

@@ -10,12 +10,14 @@ import heapq
 from collections.abc import Callable, Iterable, Mapping
 from dataclasses import dataclass
 from enum import Enum
-
-import networkx as nx
+from typing import TYPE_CHECKING
 
 from rateloom.engine.codec import digest_of
 from rateloom.engine.files import UNREADABLE
 from rateloom.engine.stage import Node, Stage, key_of
+
+if TYPE_CHECKING:
+    import networkx as nx
 
 STAGE_WEIGHT = 1_000.0
 """What a stage that reads no file weighs against the size of a file [bytes]."""

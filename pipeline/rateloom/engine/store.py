@@ -152,7 +152,7 @@ class Store:
                 part = rows[begin : begin + 1000]
                 values = {digest: self._content(digest) for _, digest, _, _ in part}
                 new.put((key, value, remarks) for key, digest, _, remarks in part if (value := values[digest]))
-            new.put_notes({name: content for name in ("past", "files") if (content := self.note(name)) is not None})
+            new.put_notes(self._sound_notes())
         self._connection.close()
         remove_store(self._path)
         beside.replace(self._path)
@@ -167,6 +167,18 @@ class Store:
         if row is None or not isinstance(row[0], bytes) or digest_of(name.encode(), row[0]) != row[1]:
             return None
         return row[0]
+
+    def _sound_notes(self) -> dict[str, bytes]:
+        """Give all notes that are sound."""
+        names: list[tuple[bytes]] = []
+        with contextlib.suppress(*SQLITE_ERRORS):
+            names.extend(self._connection.execute("SELECT name FROM notes"))
+        notes = {}
+        for (name,) in names:
+            with contextlib.suppress(UnicodeDecodeError, AttributeError):  # a damaged name
+                if (content := self.note(name.decode())) is not None:
+                    notes[name.decode()] = content
+        return notes
 
     def put_notes(self, notes: dict[str, bytes]) -> None:
         """Keep notes in one transaction.

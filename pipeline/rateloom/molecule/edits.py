@@ -1,4 +1,4 @@
-"""The fewest bonds that turn some molecules into others, from their bonds alone: no geometry of a saddle is needed."""
+"""The fewest bonds that turn some molecules into others, from their bonds alone, without the geometry of a saddle."""
 
 from itertools import combinations
 

@@ -21,8 +21,8 @@ def hard_sphere_rate_coefficient(reduced_mass: float, diameter: float, temperatu
     Returns
     -------
     ndarray, shape (n_temperatures,)
-        Z in Z [A][B], molecules per volume [m3 s-1]. For identical partners the collisions per volume and time are half
-        of Z [A]^2.
+        Z in Z [A][B], molecules per volume [m3 s-1]. For identical partners the collisions per volume and time are
+        half of Z [A]^2.
 
     Raises
     ------

@@ -146,7 +146,7 @@ def evaluate_reaction(
     Raises
     ------
     ValueError
-        The saddle has no imaginary frequency, the path degeneracy is not above zero, or the grids or pressures differ.
+        The saddle has no imaginary frequency, the path degeneracy is not above zero, or grids or pressures differ.
     KeyError
         No tunnelling model has that name.
 
@@ -238,8 +238,8 @@ def _reaction_functions(
     reactants: Sequence[Participant], products: Sequence[Participant], energy: float
 ) -> tuple[FloatArray, FloatArray]:
     """Reaction enthalpy and entropy [J mol-1, J mol-1 K-1]."""
-    enthalpy = sum(one.thermochemistry.enthalpy for one in products)
-    enthalpy = enthalpy - sum(one.thermochemistry.enthalpy for one in reactants)
-    entropy = sum(one.thermochemistry.entropy for one in products)
-    entropy = entropy - sum(one.thermochemistry.entropy for one in reactants)
+    gained = [one.thermochemistry for one in products]
+    lost = [one.thermochemistry for one in reactants]
+    enthalpy = np.sum([one.enthalpy for one in gained], axis=0) - np.sum([one.enthalpy for one in lost], axis=0)
+    entropy = np.sum([one.entropy for one in gained], axis=0) - np.sum([one.entropy for one in lost], axis=0)
     return N_A * energy + enthalpy, entropy

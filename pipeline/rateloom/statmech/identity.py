@@ -54,7 +54,7 @@ def composition_of(atoms: tuple[str, ...]) -> Composition:
 
 
 def file_remarks(frequencies: Calculation | None, energy: Calculation | None) -> tuple[Remark, ...]:
-    """Say which file did not end well, and whether the two are of the same atoms.
+    """Say whether the two files are of the same atoms; whether they ended well the reading has said.
 
     Parameters
     ----------
@@ -64,20 +64,13 @@ def file_remarks(frequencies: Calculation | None, energy: Calculation | None) ->
     Returns
     -------
     tuple of Remark
-        ``unfinished-calculation``, ``not-converged`` and ``geometries-differ``.
+        ``geometries-differ``.
 
     References
     ----------
     .. [1] No physics.
     """
-    remarks = []
-    for name, calculation in (("frequency", frequencies), ("energy", energy)):
-        if calculation is not None and not calculation.finished:
-            message = f"The calculation in the {name} file did not end normally: run it to its end."
-            remarks.append(Remark("unfinished-calculation", message, value=f"{name} file"))
-        if calculation is not None and calculation.converged is False:
-            message = f"The optimisation in the {name} file did not converge: continue it."
-            remarks.append(Remark("not-converged", message, value=f"{name} file"))
+    remarks: list[Remark] = []
     if frequencies is not None and energy is not None:
         formulas = [_formula(composition_of(calculation.atoms)) for calculation in (energy, frequencies)]
         if formulas[0] != formulas[1]:

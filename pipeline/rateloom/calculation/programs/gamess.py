@@ -77,11 +77,12 @@ def basis(text: str) -> str:
 
 def displaced(text: str) -> list[tuple[int, int]]:
     """Find the displaced geometries of a numerical Hessian."""
-    first = pattern(r"^\s*COORD +[1-9]\d* +NUCLEAR COORDINATES").search(text)
-    if first is None:
-        return []
-    end = text.find("NORMAL COORDINATE ANALYSIS", first.start())
-    return [(first.start(), end if end >= 0 else len(text))]
+    spans: list[tuple[int, int]] = []
+    for match in pattern(r"^\s*COORD +[1-9]\d* +NUCLEAR COORDINATES").finditer(text):
+        if not spans or match.start() >= spans[-1][1]:
+            end = text.find("NORMAL COORDINATE ANALYSIS", match.start())
+            spans.append((match.start(), end if end >= 0 else len(text)))
+    return spans
 
 
 def gradient(text: str) -> FloatArray | None:

@@ -31,5 +31,5 @@ class Tunnelling:
 class TunnellingModel(Protocol):
     """A function that evaluates one model."""
 
-    def __call__(self, barrier: Barrier, temperatures: FloatArray) -> Tunnelling:
+    def __call__(self, barrier: Barrier, temperatures: FloatArray, /) -> Tunnelling:
         """Evaluate the factors at temperatures [K], shape (n_temperatures,)."""
