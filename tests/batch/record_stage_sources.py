@@ -18,8 +18,7 @@ def main() -> None:
     """Say what changed and write the record."""
     sources = Sources(HERE.parents[1] / "pipeline", "rateloom", left_out=("rateloom.engine",))
     now = describe(table("rateloom.batch.stages:STAGES"), sources)
-    before = load(RECORD) if RECORD.exists() else {}
-    print("\n".join(differences(before, now)) or "nothing changed")
+    print("\n".join(differences(load(RECORD), now)) or "nothing changed")
     save(RECORD, now)
 
 

@@ -174,8 +174,8 @@ def table(name: str) -> Mapping[str, Any]:
 
 
 def load(file: Path) -> dict[str, dict[str, Any]]:
-    """Read a record."""
-    return json.loads(file.read_text(encoding="utf-8"))
+    """Read a record; empty where none was made yet."""
+    return json.loads(file.read_text(encoding="utf-8")) if file.exists() else {}
 
 
 def save(file: Path, description: Mapping[str, Mapping[str, Any]]) -> None:

@@ -132,9 +132,7 @@ def test_the_imaginary_frequency_is_scaled_like_the_modes() -> None:
 def test_a_second_imaginary_mode_counts_as_real() -> None:
     assembly = saddle(hydrogen_exchange(first_bend=-150.0))
 
-    assert codes(assembly) == ["second-imaginary-mode"]
-    assert assembly.remarks[0].value == "150.0i cm-1"
-    assert "counts as a real vibration of the same magnitude" in assembly.remarks[0].message
+    assert codes(assembly) == []  # the audit has the threshold that tells noise from an error
     assert assembly.species is not None
     assert assembly.species.imaginary_frequency == pytest.approx(1000 * PER_CM)
     assert assembly.species.frequencies / PER_CM == pytest.approx([150, 900, 2050])
@@ -143,7 +141,7 @@ def test_a_second_imaginary_mode_counts_as_real() -> None:
 def test_an_imaginary_mode_of_a_minimum_counts_as_real() -> None:
     assembly = minimum(replace(WATER, frequencies_per_cm=np.array([-30.0, 3750, 3860])))
 
-    assert codes(assembly) == ["imaginary-mode-in-minimum"]
+    assert codes(assembly) == []
     assert assembly.species is not None
     assert assembly.species.frequencies / PER_CM == pytest.approx([30, 3750, 3860])
     assert assembly.species.imaginary_frequency is None

@@ -4,7 +4,8 @@ What keeps a species from being assembled at all (unfinished, no energy, wrong n
 remarked on where it is assembled; here stands what would go unnoticed. Geometries in angstrom, as in the record.
 """
 
-from collections.abc import Sequence
+from collections.abc import Iterator, Sequence
+from contextlib import suppress
 
 import numpy as np
 import periodictable
@@ -129,12 +130,14 @@ def _constants(calculation: Calculation, limits: Limits) -> list[Remark]:
         return []
     positions = calculation.geometry_angstrom * angstrom
     shape = shape_of(positions)
-    deviations = [
-        _largest_deviation(printed, rotational_constants(moments_of(masses, positions, shape)) / (c / centi))
-        for masses in _possible_masses(calculation)
-    ]
-    worst, limit = 100 * min(deviations, default=0.0), limits.rotational_constant_percent
-    if worst <= limit:
+    limit = limits.rotational_constant_percent
+    worst = np.inf
+    for masses in _possible_masses(calculation):
+        calculated = rotational_constants(moments_of(masses, positions, shape)) / (c / centi)
+        worst = min(worst, 100 * _largest_deviation(printed, calculated))
+        if worst <= limit:
+            return []
+    if not np.isfinite(worst):
         return []
     listed = ", ".join(f"{constant:.5g}" for constant in printed)
     message = (
@@ -144,18 +147,13 @@ def _constants(calculation: Calculation, limits: Limits) -> list[Remark]:
     return [Remark("rotational-constants-differ", message, f"{worst:.2f} %", f"{limit:g} %")]
 
 
-def _possible_masses(calculation: Calculation) -> list[FloatArray]:
-    """Masses printed, of the most abundant isotopes, and of the natural mixture [kg]."""
-    try:
-        masses = [atomic_masses(calculation.atoms)]
-        masses.append(
-            np.array([periodictable.elements.symbol(symbol).mass for symbol in calculation.atoms]) * atomic_mass
-        )
-    except ValueError:
-        return []  # an unknown element is remarked on where the species is assembled
+def _possible_masses(calculation: Calculation) -> Iterator[FloatArray]:
+    """Masses printed, of the most abundant isotopes, and of the natural mixture [kg]; none of an unknown element."""
     if calculation.masses_u is not None and len(calculation.masses_u) == len(calculation.atoms):
-        masses.append(calculation.masses_u * atomic_mass)
-    return masses
+        yield calculation.masses_u * atomic_mass
+    with suppress(ValueError):  # remarked on where the species is assembled
+        yield atomic_masses(calculation.atoms)
+        yield np.array([periodictable.elements.symbol(atom).mass for atom in calculation.atoms]) * atomic_mass
 
 
 def _largest_deviation(printed: FloatArray, calculated: FloatArray) -> float:

@@ -4,7 +4,7 @@ A cycle is a combination of reactions, forwards or backwards, that changes nothi
 merged. Of all cycles through a molecule with two names the shortest is sought.
 """
 
-from collections import defaultdict
+from collections import Counter, defaultdict
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from fractions import Fraction
@@ -40,7 +40,7 @@ class OpenCycle:
     """Two names of one molecule."""
     steps: tuple[tuple[str, float], ...]
     """(reaction, times forwards; negative backwards)"""
-    sum_kJ_per_mol: float  # noqa: N815 - the symbol of the unit
+    sum_kJ_per_mol: float
 
     @property
     def words(self) -> str:
@@ -83,6 +83,7 @@ def open_cycles(
     .. [1] W. R. Smith, R. W. Missen, Chemical Reaction Equilibrium Analysis, Wiley, 1982, ch. 2, for the matrix of
        stoichiometric coefficients (from memory).
     """
+    reactions = _in_cycles(reactions, molecules)
     used = {name for reaction in reactions for name in reaction.change}
     names_of: dict[int, list[str]] = defaultdict(list)
     for name in energies:
@@ -105,6 +106,25 @@ def open_cycles(
                     OpenCycle(first=first, second=second, steps=steps, sum_kJ_per_mol=float(total) * N_A / kilo)
                 )
     return found
+
+
+def _in_cycles(reactions: Sequence[Balance], molecules: Mapping[str, int]) -> list[Balance]:
+    """Drop, again and again, reactions that alone change the number of some molecule: no cycle holds them."""
+    left = [(reaction, _merged(reaction, molecules)) for reaction in reactions]
+    while True:
+        uses = Counter(molecule for _, change in left for molecule in change)
+        kept = [(reaction, change) for reaction, change in left if all(uses[molecule] > 1 for molecule in change)]
+        if len(kept) == len(left):
+            return [reaction for reaction, _ in left]
+        left = kept
+
+
+def _merged(reaction: Balance, molecules: Mapping[str, int]) -> dict[int, int]:
+    """What a reaction changes by molecule, whatever its names."""
+    change: Counter[int] = Counter()
+    for name, number in reaction.change.items():
+        change[molecules[name]] += number
+    return {molecule: number for molecule, number in change.items() if number}
 
 
 def _cycle_through(name: str, reactions: Sequence[Balance], molecules: Mapping[str, int]) -> list[float] | None:

@@ -133,18 +133,13 @@ def _candidates(
     first_labels: Sequence[str], one: FloatArray, second_labels: Sequence[str], other: FloatArray, tolerance: float
 ) -> list[list[int]]:
     """Atoms of the second geometry that see the others at the same distances as each atom of the first."""
-    profiles: list[dict[int, FloatArray]] = []
+    profiles = []
     for labels, lengths in ((first_labels, one), (second_labels, other)):
         members: dict[str, list[int]] = defaultdict(list)
         for atom, label in enumerate(labels):
             members[label].append(atom)
         parts = [np.sort(lengths[:, members[label]], axis=1) for label in sorted(members)]
-        profiles.append(dict(enumerate(np.concatenate(parts, axis=1))))
-    return [
-        [
-            candidate
-            for candidate, label in enumerate(second_labels)
-            if label == first_labels[atom] and np.abs(profile - profiles[1][candidate]).max() <= tolerance
-        ]
-        for atom, profile in profiles[0].items()
-    ]
+        profiles.append(np.concatenate(parts, axis=1))
+    near = np.abs(profiles[0][:, np.newaxis] - profiles[1]).max(axis=2) <= tolerance
+    near &= np.array(first_labels)[:, np.newaxis] == np.array(second_labels)
+    return [np.flatnonzero(row).tolist() for row in near]

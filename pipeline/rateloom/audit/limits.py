@@ -35,7 +35,7 @@ class Limits:
     Molecules, Van Nostrand, 1979) and up to 4700 cm-1 at the Hartree-Fock level."""
     soft_mode_per_cm: float = 100.0
     """Real modes below this are seldom harmonic; common practice."""
-    soft_mode_temperature_K: float = 1000.0  # noqa: N815 - the symbol of the unit
+    soft_mode_temperature_K: float = 1000.0
     """Where the weight of soft modes in a partition function is worked out: the middle of combustion grids."""
     soft_modes_factor_ratio: float = 3.0
     """Soft modes that change a rate coefficient by more than this factor either way decide it."""
@@ -58,7 +58,7 @@ class Limits:
     curvature_slope_ratio: float = 0.5
     """Largest difference of d ln k / d ln T between a rate coefficient and the expression fitted to it: at a
     temperature lower by 10 % the two drift apart by 5 %."""
-    cycle_kJ_per_mol: float = 1.0  # noqa: N815 - the symbol of the unit
+    cycle_kJ_per_mol: float = 1.0
     """Largest sum of reaction energies round a closed cycle: a factor of 1.5 in an equilibrium constant at 300 K."""
 
     @classmethod

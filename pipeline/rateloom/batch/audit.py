@@ -10,7 +10,9 @@ from rateloom.batch.verdict import verdict_of
 from rateloom.engine import open_store
 
 
-def audit_job(path: str, *, output: str | None = None, workers: int = 1, progress: Progress) -> tuple[Finding, ...]:
+def audit_job(
+    path: str, *, output: str | None = None, workers: int = 1, scheduler: str | None = None, progress: Progress
+) -> tuple[Finding, ...]:
     """Check every calculation, species and reaction of a job.
 
     Parameters
@@ -21,6 +23,8 @@ def audit_job(path: str, *, output: str | None = None, workers: int = 1, progres
         Another output folder than the job names; only its store is used.
     workers
         Processes to compute with.
+    scheduler
+        Address of a Dask scheduler whose workers compute instead.
     progress
         Called after each node.
 
@@ -31,13 +35,13 @@ def audit_job(path: str, *, output: str | None = None, workers: int = 1, progres
 
     Raises
     ------
-    JobError, StoreError
-        The job or the store cannot be used.
+    JobError, StoreError, ClusterError
+        The job, the store or the cluster cannot be used.
     """
     job = load(path, output)
     graph = graph_of(job, rates=False)
     with open_store(Path(job.output)) as store:
         evaluated = bring_up_to_date(
-            graph, store, workers=crew(graph.nodes, store, workers), wanted=(WHOLE_JOB,), progress=progress
+            graph, store, workers=crew(graph.nodes, store, workers, scheduler), wanted=(WHOLE_JOB,), progress=progress
         )
         return verdict_of(job, evaluated.remarks(), {}).findings

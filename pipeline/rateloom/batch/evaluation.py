@@ -7,7 +7,7 @@ from typing import Any
 
 from rateloom.batch.graph import WHOLE_JOB, JobGraph
 from rateloom.batch.stages import STAGES
-from rateloom.engine import Evaluation, Fingerprints, Node, Status, Store, build_graph, decode, evaluate
+from rateloom.engine import Cluster, Evaluation, Fingerprints, Node, Status, Store, build_graph, decode, evaluate
 from rateloom.engine.workers import InProcess, Processes, Workers
 from rateloom.remarks import Remark
 
@@ -99,8 +99,10 @@ def bring_up_to_date(
     return Evaluated(graph, evaluation, store, files)
 
 
-def crew(nodes: Mapping[str, Node], store: Store, count: int) -> Workers:
-    """Choose where stages are carried out: in this process where there is little to do."""
+def crew(nodes: Mapping[str, Node], store: Store, count: int, scheduler: str | None = None) -> Workers:
+    """Choose where stages are carried out: on a cluster if asked, in this process where there is little to do."""
+    if scheduler is not None:
+        return Cluster(scheduler, STAGE_TABLE)
     known = store.files()
     unread = sum(node.file is not None and node.file not in known for node in nodes.values())
     if count == 1 or (store.past() and unread < FEW):

@@ -17,7 +17,9 @@ from rateloom.job import Job
 from rateloom.output import changes_table, findings_table, provenance, read_file, table, write_files
 
 
-def run_job(path: str, *, output: str | None = None, workers: int = 1, progress: Progress) -> Summary:
+def run_job(
+    path: str, *, output: str | None = None, workers: int = 1, scheduler: str | None = None, progress: Progress
+) -> Summary:
     """Bring the output folder of a job up to date.
 
     Parameters
@@ -28,6 +30,8 @@ def run_job(path: str, *, output: str | None = None, workers: int = 1, progress:
         Another output folder than the job names.
     workers
         Processes to compute with.
+    scheduler
+        Address of a Dask scheduler whose workers compute instead.
     progress
         Called after each node.
 
@@ -38,8 +42,8 @@ def run_job(path: str, *, output: str | None = None, workers: int = 1, progress:
 
     Raises
     ------
-    JobError, StoreError, OutputError
-        The job, the store or the folder cannot be used.
+    JobError, StoreError, OutputError, ClusterError
+        The job, the store, the folder or the cluster cannot be used.
     """
     begun = time.monotonic()
     job = load(path, output)
@@ -49,7 +53,7 @@ def run_job(path: str, *, output: str | None = None, workers: int = 1, progress:
         known_before = set(store.past())
         wanted = (WHOLE_JOB, *graph.species_rows.values(), *graph.reaction_rows.values())
         evaluated = bring_up_to_date(
-            graph, store, workers=crew(graph.nodes, store, workers), wanted=wanted, progress=progress
+            graph, store, workers=crew(graph.nodes, store, workers, scheduler), wanted=wanted, progress=progress
         )
         rows = {name: evaluated.value(node) for name, node in graph.reaction_rows.items()}
         missing = {name: value is None for name, value in rows.items()}

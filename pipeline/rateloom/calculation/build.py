@@ -203,7 +203,7 @@ def version(text: str, program: Program, track: Track) -> str:
 
 def multiplicity(text: str, program: Program, track: Track, line: int) -> int:
     """Give the spin multiplicity."""
-    printed = last_group(program.multiplicity, text) if program.multiplicity else ""
+    printed = program.multiplicity(text) if program.multiplicity else None
     return int(printed or track.last("mult", line) or 1)
 
 

@@ -38,7 +38,9 @@ def run(args: argparse.Namespace) -> int:
 
     wanted = check_codes(args.only or ())
     with progress() as report:
-        findings = audit_job(args.job, output=args.output, workers=workers_of(args), progress=report)
+        findings = audit_job(
+            args.job, output=args.output, workers=workers_of(args), scheduler=args.scheduler, progress=report
+        )
     shown = [finding for finding in findings if not wanted or finding.code in wanted]
     print_findings(shown, as_json=args.json)
     return int(fails(findings, args.fail_on))

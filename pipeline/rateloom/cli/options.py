@@ -2,12 +2,21 @@
 
 import argparse
 import os
+from urllib.parse import urlsplit
 
 
 def add_job_options(parser: argparse.ArgumentParser) -> None:
     """Add what every command that computes takes."""
     parser.add_argument("job", metavar="JOB", help="the job file (YAML)")
-    parser.add_argument("--workers", type=_count, metavar="N", help="processes to compute with (default: the cores)")
+    where = parser.add_mutually_exclusive_group()
+    where.add_argument("--workers", type=_count, metavar="N", help="processes to compute with (default: the cores)")
+    where.add_argument(
+        "--scheduler",
+        type=_address,
+        metavar="ADDRESS",
+        help="compute on the workers of this Dask scheduler, tcp://HOST:PORT or tls://HOST:PORT "
+        "(certificates: those of the configuration of Dask)",
+    )
     parser.add_argument("--output", metavar="DIR", help="use this folder instead of the one that the job file names")
 
 
@@ -28,3 +37,24 @@ def _count(text: str) -> int:
         msg = f"{text!r} is not a whole number above zero"
         raise argparse.ArgumentTypeError(msg)
     return int(text)
+
+
+def _address(text: str) -> str:
+    """Read the address of a scheduler.
+
+    Raises
+    ------
+    argparse.ArgumentTypeError
+        It is no such address.
+    """
+    try:
+        parts = urlsplit(text)
+        complete = (
+            parts.scheme in {"tcp", "tls"} and parts.hostname and parts.port and text.endswith(f":{parts.port}")
+        )
+    except ValueError:
+        complete = False
+    if not complete:
+        msg = f"{text!r} is not an address such as tcp://node7:8786 or tls://node7:8786"
+        raise argparse.ArgumentTypeError(msg)
+    return text

@@ -24,7 +24,9 @@ def run(args: argparse.Namespace) -> int:
     from rateloom.batch import run_job
 
     with progress() as report:
-        summary = run_job(args.job, output=args.output, workers=workers_of(args), progress=report)
+        summary = run_job(
+            args.job, output=args.output, workers=workers_of(args), scheduler=args.scheduler, progress=report
+        )
     for fault in summary.faults:
         print(f"A fault of the program in {fault}", file=sys.stderr)
     print(summary.text())

@@ -164,7 +164,9 @@ def log_vibration_by_mode(frequencies: FloatArray, temperatures: FloatArray) -> 
     if frequencies.size:
         _above_zero(frequencies, "frequencies [Hz]")
     reduced = h * frequencies / (k * temperatures[:, np.newaxis])
-    return -np.log(-np.expm1(-reduced))  # expm1: soft modes keep their digits
+    # expm1 keeps the digits of soft modes, log1p those of stiff ones
+    soft, stiff = np.log(-np.expm1(-reduced)), np.log1p(-np.exp(-np.maximum(reduced, 1.0)))
+    return -np.where(reduced < 1.0, soft, stiff)
 
 
 def log_vibration(frequencies: FloatArray, temperatures: FloatArray) -> FloatArray:

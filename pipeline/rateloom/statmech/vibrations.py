@@ -97,28 +97,16 @@ def _recovery_remark(printed: FloatArray, recovered: FloatArray, framework: Fram
 
 
 def _sorted_out(per_cm: FloatArray, source: str, *, is_saddle: bool) -> tuple[Vibrations | None, tuple[Remark, ...]]:
-    """Set the reaction coordinate apart; an imaginary mode beside it counts as real, of the same magnitude."""
+    """Set the reaction coordinate apart; an imaginary mode beside it counts as real, of the same magnitude.
+
+    Whether such a mode is noise or an error hangs on a threshold, so that the audit remarks on it.
+    """
     ascending = np.sort(per_cm)
-    imaginary = -ascending[ascending < 0]
-    remarks: tuple[Remark, ...] = ()
-    coordinate = None
-    rest = ascending
-    if is_saddle:
-        if not len(imaginary):
-            lowest = f"; the lowest mode has {ascending[0]:.1f} cm-1" if len(ascending) else ""
-            message = f"There is no imaginary mode, so that this is no saddle and has no reaction coordinate{lowest}."
-            return None, (Remark("no-imaginary-mode", message, value="0", limit="1"),)
-        coordinate, rest, imaginary = float(imaginary[0]) * PER_CM, ascending[1:], imaginary[1:]
-    if len(imaginary):
-        remarks = (_surplus_remark(imaginary, is_saddle=is_saddle),)
-    return Vibrations(real=np.sort(np.abs(rest)) * PER_CM, imaginary=coordinate, source=source), remarks
-
-
-def _surplus_remark(imaginary: FloatArray, *, is_saddle: bool) -> Remark:
-    values = ", ".join(f"{value:.1f}i" for value in imaginary)
-    treated = "If this is accepted, it counts as a real vibration of the same magnitude"
-    if is_saddle:
-        message = f"Beside the reaction coordinate there is an imaginary mode ({values} cm-1). {treated}."
-        return Remark("second-imaginary-mode", message, value=f"{values} cm-1", limit="1 imaginary mode")
-    message = f"This minimum has an imaginary mode ({values} cm-1). {treated}."
-    return Remark("imaginary-mode-in-minimum", message, value=f"{values} cm-1", limit="0 imaginary modes")
+    if not is_saddle:
+        return Vibrations(real=np.sort(np.abs(ascending)) * PER_CM, imaginary=None, source=source), ()
+    if not (ascending < 0).any():
+        lowest = f"; the lowest mode has {ascending[0]:.1f} cm-1" if len(ascending) else ""
+        message = f"There is no imaginary mode, so that this is no saddle and has no reaction coordinate{lowest}."
+        return None, (Remark("no-imaginary-mode", message, value="0", limit="1"),)
+    rest = np.sort(np.abs(ascending[1:]))
+    return Vibrations(real=rest * PER_CM, imaginary=-float(ascending[0]) * PER_CM, source=source), ()

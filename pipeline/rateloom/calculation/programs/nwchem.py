@@ -84,6 +84,17 @@ def basis(text: str) -> str:
     return "+".join(dict.fromkeys(usual_basis(name) for name in names))
 
 
+def multiplicity(text: str) -> int | None:
+    """Read the last multiplicity, or the numbers of electrons in the place of it."""
+    last = None
+    word = r"Spin multiplicity *: *(\d+)"
+    electrons = r"^ *alpha electrons *= *(\d+)\n *beta  ?electrons *= *(\d+)"
+    for match in pattern(rf"{word}|{electrons}|^ *open shells *= *(\d+)").finditer(text):
+        direct, alpha, beta, shells = match.groups()
+        last = int(direct) if direct else int(shells) + 1 if shells else int(alpha) - int(beta) + 1
+    return last
+
+
 def solvent(text: str) -> str:
     """Read the solvent of a continuum model."""
     if "COSMO solvation results" not in text and "solvation energy" not in text:
@@ -153,7 +164,7 @@ NWCHEM = Program(
     not_converged=r"^\s+Failed to converge in maximum number of steps",
     geometry_follows=True,
     spin_squared=r"<S2>\s*=\s*" + NUMBER,
-    multiplicity=r"Spin multiplicity\s*:\s*(\d+)",
+    multiplicity=multiplicity,
     gradient=gradient,
     rotational_constants=rotational_constants,
     hessian=hessian,

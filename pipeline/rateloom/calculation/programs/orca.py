@@ -101,6 +101,13 @@ def rotational_constants(text: str) -> FloatArray | None:
     return np.array([number(word) for word in pattern(NUMBER).findall(line)]) if line else None
 
 
+def multiplicity(text: str) -> int | None:
+    """Read the multiplicity, in short printing that of the input."""
+    word = last_group(r"^ Multiplicity +Mult +\.+ +(\d+)", text)
+    word = word or last_group(r"^\|\s*\d+>\s*\*\s*[a-zA-Z]+\s+-?\d+\s+(\d+)", text)
+    return int(word) if word else None
+
+
 ORCA = Program(
     name="ORCA",
     reader="cclib.parser.orcaparser:ORCA",
@@ -114,7 +121,7 @@ ORCA = Program(
     converged=r"THE OPTIMIZATION HAS CONVERGED",
     not_converged=r"The optimization did not converge but reached the maximum",
     spin_squared=r"^Expectation value of <S\*\*2>\s*:\s*" + NUMBER,
-    multiplicity=r"^\|\s*\d+>\s*\*\s*[a-zA-Z]+\s+-?\d+\s+(\d+)",
+    multiplicity=multiplicity,
     no_geometry_advice="Its short printing leaves the geometry out: compute without MiniPrint.",
     gradient=gradient,
     rotational_constants=rotational_constants,

@@ -34,6 +34,8 @@ SpanReader = Callable[[str], list[tuple[int, int]]]
 """Text to parts of it, as first position and the one behind the last."""
 SearchReader = Callable[[str], list[tuple[int, bool]]]
 """Text to the places where optimisations ended, and whether they converged."""
+MultiplicityReader = Callable[[str], int | None]
+"""Text to the last spin multiplicity in it, None where it prints none."""
 ArrayReader = Callable[[str], FloatArray | None]
 """Part of a text to an array, None where it is not printed."""
 
@@ -71,8 +73,8 @@ class Program:
     """The geometry in which an optimisation ended is printed behind the line that says so."""
     spin_squared: str = ""
     """<S**2> of the reference before annihilation as one group."""
-    multiplicity: str = ""
-    """Spin multiplicity as one group, where cclib's is not to be trusted."""
+    multiplicity: MultiplicityReader | None = None
+    """Spin multiplicity where cclib's is missing or not to be trusted."""
     displaced: SpanReader | None = None
     """Parts of a text that belong to the displaced geometries of a numerical differentiation."""
     gradient: ArrayReader | None = None
