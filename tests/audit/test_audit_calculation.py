@@ -101,6 +101,7 @@ def test_the_limit_of_the_job_file_counts() -> None:
 
 def test_an_isomer_in_the_energy_file_is_another_molecule() -> None:
     assert codes(calculation("CH3CH2OH"), calculation("CH3OCH3")) == ["connectivity-differs"]
+    assert codes(calculation("CH3CH2OH"), calculation("CH3OCH3"), is_saddle=True) == ["geometries-differ"]
 
 
 def test_other_atoms_are_left_to_the_assembly() -> None:

@@ -4,7 +4,7 @@ What keeps a species from being assembled at all (unfinished, no energy, wrong n
 remarked on where it is assembled; here stands what would go unnoticed. Geometries in angstrom, as in the record.
 """
 
-from collections.abc import Iterator, Sequence
+from collections.abc import Iterator
 from contextlib import suppress
 
 import numpy as np
@@ -60,7 +60,7 @@ def calculation_remarks(
     if energy is not None:
         remarks += _spin("energy", energy, limits)
         if frequencies is not None and has_geometry(frequencies) and has_geometry(energy):
-            remarks += _two_geometries(frequencies, energy, limits)
+            remarks += _two_geometries(frequencies, energy, limits, is_saddle=is_saddle)
     return tuple(remarks)
 
 
@@ -184,7 +184,9 @@ def _spin(file: str, calculation: Calculation, limits: Limits) -> list[Remark]:
     ]
 
 
-def _two_geometries(frequencies: Calculation, energy: Calculation, limits: Limits) -> list[Remark]:
+def _two_geometries(
+    frequencies: Calculation, energy: Calculation, limits: Limits, *, is_saddle: bool
+) -> list[Remark]:
     """Hold the geometry of the energy against that of the frequencies, in any order of the atoms."""
     limit = limits.geometry_difference_angstrom
     difference = shape_difference(
@@ -194,9 +196,8 @@ def _two_geometries(frequencies: Calculation, energy: Calculation, limits: Limit
     if difference <= limit or not np.isfinite(difference):
         return []
     value = f"{difference:.3f} angstrom"
-    if bond_signature(frequencies.atoms, frequencies.geometry_angstrom) != bond_signature(
-        energy.atoms, energy.geometry_angstrom
-    ):
+    # The half-broken bonds of a saddle, or a hair's breadth elsewhere, make no other molecule.
+    if not is_saddle and difference > limits.same_molecule_angstrom and _bonds_differ(frequencies, energy):
         message = "the energy file and the frequency file hold different bonds: they are of different molecules"
         return [Remark("connectivity-differs", message, value, f"{limit:g} angstrom")]
     message = (
@@ -206,6 +207,10 @@ def _two_geometries(frequencies: Calculation, energy: Calculation, limits: Limit
     return [Remark("geometries-differ", message, value, f"{limit:g} angstrom")]
 
 
-def bond_signature(atoms: Sequence[str], geometry: FloatArray) -> object:
-    """Give a value that is equal for geometries [angstrom] with the same bonds, in any order of the atoms."""
-    return signature(atomic_numbers(atoms), bonds(atoms, geometry))
+def _bonds_differ(first: Calculation, second: Calculation) -> bool:
+    """Whether two geometries hold different molecules, in any order of the atoms."""
+    one, other = (
+        signature(atomic_numbers(calculation.atoms), bonds(calculation.atoms, calculation.geometry_angstrom))
+        for calculation in (first, second)
+    )
+    return one != other

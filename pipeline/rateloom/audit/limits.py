@@ -55,9 +55,9 @@ class Limits:
     common practice; the factor is 1.67 there."""
     tunnelling_ratio: float = 10.0
     """Tunnelling factors above this rest on the width of a one-dimensional barrier more than on its height."""
-    curvature_slope_ratio: float = 0.5
-    """Largest difference of d ln k / d ln T between a rate coefficient and the expression fitted to it: at a
-    temperature lower by 10 % the two drift apart by 5 %."""
+    curvature_slope_ratio: float = 1.0
+    """Largest difference of d ln k / d ln T between a rate coefficient and the expression fitted to it: beyond the
+    range the two then drift apart by 10 % while the temperature changes by 10 %."""
     cycle_kJ_per_mol: float = 1.0
     """Largest sum of reaction energies round a closed cycle: a factor of 1.5 in an equilibrium constant at 300 K."""
 

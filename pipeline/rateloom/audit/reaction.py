@@ -164,8 +164,8 @@ def _spin(members: Members) -> list[Remark]:
 def _origins(members: Members) -> tuple[tuple[str, list[tuple[str, Origin]]], ...]:
     """Where the geometries and the energies come from, with the names of the members."""
     return (
-        ("geometry and frequencies", [(m.name, m.geometry) for m in members.all if m.geometry is not None]),
-        ("energy", [(m.name, m.energy) for m in members.all]),
+        ("geometries and frequencies", [(m.name, m.geometry) for m in members.all if m.geometry is not None]),
+        ("energies", [(m.name, m.energy) for m in members.all]),
     )
 
 

@@ -103,8 +103,11 @@ def crew(nodes: Mapping[str, Node], store: Store, count: int, scheduler: str | N
     """Choose where stages are carried out: on a cluster if asked, in this process where there is little to do."""
     if scheduler is not None:
         return Cluster(scheduler, STAGE_TABLE)
-    known = store.files()
+    past, known = store.past(), store.files()
+    if any(result.faulty for result in past.values()):
+        # It may have taken its process along: not this one.
+        return Processes(STAGE_TABLE, count)
     unread = sum(node.file is not None and node.file not in known for node in nodes.values())
-    if count == 1 or (store.past() and unread < FEW):
+    if count == 1 or (past and unread < FEW):
         return InProcess(STAGE_TABLE)
     return Processes(STAGE_TABLE, count)

@@ -2,7 +2,8 @@
 
 import time
 from collections import Counter
-from collections.abc import Iterable
+from collections.abc import Iterable, Mapping
+from dataclasses import replace
 from pathlib import Path
 
 from rateloom.audit import SEVERITIES, Finding
@@ -11,8 +12,9 @@ from rateloom.batch.graph import WHOLE_JOB, graph_of
 from rateloom.batch.loading import load
 from rateloom.batch.stages import ReactionRows, SpeciesRows
 from rateloom.batch.summary import Summary
+from rateloom.batch.unchanged import LastRun, program_state, remember_run
 from rateloom.batch.verdict import Verdict, verdict_of
-from rateloom.engine import Status, open_store
+from rateloom.engine import Fingerprints, Status, open_store
 from rateloom.job import Job
 from rateloom.output import changes_table, findings_table, provenance, read_file, table, write_files
 
@@ -59,12 +61,23 @@ def run_job(
         missing = {name: value is None for name, value in rows.items()}
         verdict = verdict_of(job, evaluated.remarks(), missing)
         tables = _tables(job, evaluated, verdict, rows)
-        computed, reused = evaluated.counts()
-        hashes = {path: state.sha256 for path, state in evaluated.files.states.items()}
-        tables["run.json"] = provenance(job.title, job.path, hashes, computed, reused)
+        tables["run.json"] = _provenance(job, evaluated, *evaluated.counts())
         tables["changes.csv"] = changes_table(read_file(folder, "rates.csv"), tables["rates.csv"])
         write_files(folder, tables)
         store.keep_only(set(evaluated.evaluation.keys.values()))
+        summary = _summary(job, evaluated, verdict, known_before)
+        if not summary.faults:
+            remember_run(store, folder, _last_run(job, evaluated, tables, summary))
+    return replace(summary, seconds=time.monotonic() - begun)
+
+
+def _provenance(job: Job, evaluated: Evaluated, computed: Mapping[str, int], reused: Mapping[str, int]) -> bytes:
+    hashes = {path: state.sha256 for path, state in evaluated.files.states.items()}
+    return provenance(job.title, job.path, hashes, computed, reused)
+
+
+def _summary(job: Job, evaluated: Evaluated, verdict: Verdict, known_before: set[str]) -> Summary:
+    computed, reused = evaluated.counts()
     status = evaluated.evaluation.status
     return Summary(
         title=job.title,
@@ -76,7 +89,25 @@ def run_job(
         reused=reused,
         renewed=tuple(sorted(n for n in known_before & set(status) if status[n] is Status.COMPUTED)),
         faults=tuple(f"{fault.node}: {fault.detail}" for fault in evaluated.evaluation.faults),
-        seconds=time.monotonic() - begun,
+    )
+
+
+def _last_run(job: Job, evaluated: Evaluated, tables: Mapping[str, bytes], summary: Summary) -> LastRun:
+    """Say what the next run is to find unchanged, and what it then writes."""
+    nothing = dict.fromkeys(summary.computed, 0)
+    everything = {stage: count + summary.reused[stage] for stage, count in summary.computed.items()}
+    now = {
+        "run.json": _provenance(job, evaluated, nothing, everything),
+        "changes.csv": changes_table(None, tables["rates.csv"]),
+    }
+    job_files = Fingerprints({})
+    return LastRun(
+        program=program_state(),
+        job=job.path,
+        files=evaluated.files.states | {path: job_files[path] for path in job.files},
+        tables={name: (0, 0, 0) for name in tables if name not in now},
+        summary=replace(summary, computed=nothing, reused=everything, renewed=()),
+        now=now,
     )
 
 

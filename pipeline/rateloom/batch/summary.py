@@ -3,6 +3,7 @@
 from collections.abc import Mapping
 from dataclasses import dataclass
 
+KINDS = ("error", "warning", "note", "accepted")
 SHOWN = 12
 """How many names a list in the summary shows before it counts the rest."""
 
@@ -42,7 +43,7 @@ class Summary:
         if self.withheld:
             lines.append(f"Withheld {len(self.withheld)}:")
             lines += [f"  {name}: {'; '.join(reasons)}" for name, reasons in self.withheld.items()]
-        counted = ", ".join(f"{count} {severity}" for severity, count in self.findings.items() if count)
+        counted = ", ".join(f"{self.findings[kind]} {kind}" for kind in KINDS if self.findings.get(kind))
         lines.append(f"Findings: {counted or 'none'} (audit.csv)")
         lines += self._stages()
         return "\n".join(lines)

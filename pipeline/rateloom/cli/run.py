@@ -21,12 +21,16 @@ def add_parser(subparsers: "argparse._SubParsersAction[argparse.ArgumentParser]"
 
 def run(args: argparse.Namespace) -> int:
     """Run a job, print its summary."""
-    from rateloom.batch import run_job
+    from rateloom.batch import unchanged_run
 
-    with progress() as report:
-        summary = run_job(
-            args.job, output=args.output, workers=workers_of(args), scheduler=args.scheduler, progress=report
-        )
+    summary = unchanged_run(args.job, args.output)
+    if summary is None:
+        from rateloom.batch import run_job
+
+        with progress() as report:
+            summary = run_job(
+                args.job, output=args.output, workers=workers_of(args), scheduler=args.scheduler, progress=report
+            )
     for fault in summary.faults:
         print(f"A fault of the program in {fault}", file=sys.stderr)
     print(summary.text())

@@ -11,9 +11,11 @@ from rateloom.engine.files import FileState, Fingerprints
 from rateloom.engine.schedule import Reason, Schedule, Status
 from rateloom.engine.stage import Node, Outcome, Stage, Task, build_graph, run_task
 from rateloom.engine.store import Store, open_store, read_store
+from rateloom.engine.store_file import STORE_NAME
 from rateloom.engine.workers import InProcess, Processes, Workers
 
 __all__ = [
+    "STORE_NAME",
     "Cluster",
     "Evaluation",
     "Fault",

@@ -28,7 +28,7 @@ LINES = (
 )
 CONTRIBUTIONS = ("CCSD(T)", "CCSD", "CASSCF", "MP2", "DFT", "SCF")
 """What an energy called final holds, the highest first."""
-EXCITED = r"CIS/TD-DFT TOTAL ENERGY|EOM-CC(?:SD)? RESULTS|EOM-DLPNO-CCSD RESULTS|ROCIS|STEOM"
+EXCITED = r"^ *CIS/TD-DFT TOTAL ENERGY|^ *(?:[RU]HF )?(?:ST)?EOM-[A-Z-]+ (?:CALCULATION|RESULTS)|^ *ROCIS-EXCITATION"
 
 
 def energies(text: str) -> list[PrintedEnergy]:
@@ -85,6 +85,8 @@ def level(text: str, kind: str, metadata: dict[str, Any]) -> Level:
     )
     solvent = last_group(r'(?i)(?:CPCM|SMD|C-PCM|ALPB|COSMO)\((["\w ,-]+)\)', " ".join(words))
     solvent = solvent or last_group(r'(?i)^\|\s*\d+>\s*(?:smd)?solvent\s+"?([\w-]+)', text)
+    if not solvent and "CPCM SOLVATION MODEL" in text:
+        solvent = "CPCM"
     dispersion = next((word for word in words if re.fullmatch(r"(?i)D[234](?:BJ|ZERO|TZ)?", word)), "")
     return Level(method, usual_basis(basis), solvent.strip('"'), usual_dispersion(dispersion))
 
