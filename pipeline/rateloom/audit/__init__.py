@@ -15,10 +15,12 @@ from rateloom.audit.findings import (
     unmatched_accepts,
     withholding,
 )
+from rateloom.audit.fit import fit_remarks
 from rateloom.audit.limits import LIMITS, Limits
+from rateloom.audit.members import Member, Members
 from rateloom.audit.network import Entry, network_remarks
-from rateloom.audit.rate import fit_remarks, rate_remarks
-from rateloom.audit.reaction import Member, Members, reaction_remarks
+from rateloom.audit.rate import rate_remarks
+from rateloom.audit.reaction import reaction_remarks
 from rateloom.audit.saddle import SaddleVerdict, judge_saddle
 from rateloom.audit.species import species_remarks
 

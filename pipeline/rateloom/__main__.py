@@ -1,0 +1,7 @@
+"""``python -m rateloom``: the command line."""
+
+import sys
+
+from rateloom.cli import main
+
+sys.exit(main())
