@@ -9,8 +9,9 @@ from ase.build import molecule
 from scipy.constants import angstrom, c, centi, h, k
 
 from rateloom.audit.collision import enclosing_radius
+from rateloom.audit.fit import fit_remarks
 from rateloom.audit.limits import Limits
-from rateloom.audit.rate import fit_remarks, rate_remarks
+from rateloom.audit.rate import rate_remarks
 from rateloom.calculation.record import Calculation, Level
 from rateloom.fits import fit_rates
 from rateloom.molecule import atomic_masses

@@ -10,7 +10,8 @@ from hypothesis import strategies as st
 from scipy.constants import N_A, kilo
 
 from rateloom.audit.limits import Limits
-from rateloom.audit.reaction import Member, Members, reaction_remarks
+from rateloom.audit.members import Member, Members
+from rateloom.audit.reaction import reaction_remarks
 from rateloom.job.model import FrequencyScale
 from rateloom.statmech import Species
 

@@ -134,7 +134,7 @@ def gradients(geometry: FloatArray, listed: Sequence[Coordinate], direction: Flo
     listed : sequence of Coordinate
         The coordinates.
     direction : ndarray, shape (n_atoms, 3)
-        A displacement; it chooses the plane in which a straight angle bends, and only that.
+        A displacement in any unit; it chooses the plane in which a straight angle bends, and only that.
 
     Returns
     -------

@@ -109,7 +109,7 @@ def motion_share(mode: FloatArray, masses: FloatArray, gradients: FloatArray) ->
     Returns
     -------
     float
-        From 0 to 1: the squared projection of the mass-weighted mode on the space of the gradients.
+        From 0 to 1 [1]: the squared projection of the mass-weighted mode on the space of the gradients.
     """
     weights = np.sqrt(masses)[:, np.newaxis]
     weighted = (mode * weights).ravel()

@@ -33,7 +33,7 @@ class Motion:
 
 
 def displaced(geometry: FloatArray, mode: FloatArray, amplitude: float) -> FloatArray:
-    """Geometry moved along a mode until the fastest atom has gone the amplitude, in the unit of the geometry."""
+    """Geometry, shape (n_atoms, 3), with its fastest atom moved along a mode by the amplitude, all in one unit."""
     return geometry + mode * (amplitude / np.sqrt((mode**2).sum(axis=1).max()))
 
 

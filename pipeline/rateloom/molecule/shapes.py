@@ -54,7 +54,7 @@ def shape_change(
         Of the saddle [angstrom]; the mode in any unit, free of rigid motion.
     masses : ndarray, shape (n_atoms,)
         In any one unit.
-    minima : sequence of (Pattern, ndarray)
+    minima : sequence of (Pattern, ndarray), shape (n_atoms, 3)
         Reactant and product with their geometries [angstrom], the same molecule as the saddle in any atom order.
 
     Returns

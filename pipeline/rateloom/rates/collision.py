@@ -31,8 +31,8 @@ def hard_sphere_rate_coefficient(reduced_mass: float, diameter: float, temperatu
 
     References
     ----------
-    .. [1] P. W. Atkins, J. de Paula, Physical Chemistry, Oxford University Press, chapter on reaction dynamics
-       (from memory).
+    .. [1] D. A. McQuarrie, J. D. Simon, Physical Chemistry: A Molecular Approach, University Science Books, 1997,
+       ch. 28 (from memory).
     """
     return mean_relative_speed(reduced_mass, temperatures) * _cross_section(diameter)
 
@@ -59,8 +59,8 @@ def mean_relative_speed(reduced_mass: float, temperatures: FloatArray) -> FloatA
 
     References
     ----------
-    .. [1] P. W. Atkins, J. de Paula, Physical Chemistry, Oxford University Press, chapter on the kinetic theory of
-       gases (from memory).
+    .. [1] D. A. McQuarrie, J. D. Simon, Physical Chemistry: A Molecular Approach, University Science Books, 1997,
+       ch. 27 (from memory).
     """
     if not (reduced_mass > 0 and np.all(temperatures > 0)):
         msg = f"mass and temperatures must be above 0, not {reduced_mass:.4g} kg and {np.min(temperatures):.4g} K"

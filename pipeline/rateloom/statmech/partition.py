@@ -46,6 +46,11 @@ def partition_functions(species: Species, temperatures: FloatArray) -> Partition
     temperatures : ndarray, shape (n_temperatures,)
         [K], above zero.
 
+    Returns
+    -------
+    PartitionFunctions
+        Logarithms [1], of translation [ln m-3], each of shape (n_temperatures,).
+
     Raises
     ------
     ValueError

@@ -18,5 +18,9 @@ def none(_barrier: Barrier, temperatures: FloatArray) -> Tunnelling:
     -------
     Tunnelling
         Logarithms of factors [1], shape (n_temperatures,).
+
+    References
+    ----------
+    .. [1] No physics: a classical rate coefficient stays as it is.
     """
     return Tunnelling(np.zeros_like(temperatures))
