@@ -5,6 +5,7 @@
     RateloomError
     ├── JobError          the job file cannot be used: every problem of it at once
     ├── CalculationError  one output file cannot be read
+    │   └── TooLargeError     it is larger than what may be read
     ├── StoreError        the store cannot be used
     │   ├── StoreBusyError    another run holds it
     │   └── StoreVersionError it was written by a newer version
@@ -70,6 +71,10 @@ class CalculationError(RateloomError):
     def __init__(self, message: str) -> None:
         super().__init__(message)
         self.message = message
+
+
+class TooLargeError(CalculationError):
+    """An output file is larger, perhaps only when it is unpacked, than what may be read."""
 
 
 class StoreError(RateloomError):

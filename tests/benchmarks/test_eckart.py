@@ -42,7 +42,6 @@ def test_grid_of_factors_against_a_loop_of_integrals(capsys: pytest.CaptureFixtu
 
     np.testing.assert_allclose(np.exp(grid), loop, rtol=1e-6)  # what the textbook form keeps of its digits
     with capsys.disabled():
-        print(
-            f"\nEckart, 45 temperatures: {1e3 * ours:.3g} ms; scipy quad {1e3 * theirs:.3g} ms; {theirs / ours:.0f} times"
-        )
+        times = f"{1e3 * ours:.3g} ms; scipy quad {1e3 * theirs:.3g} ms; {theirs / ours:.0f} times"
+        print(f"\nEckart, 45 temperatures: {times}")
     assert ours < theirs

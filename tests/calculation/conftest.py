@@ -2,7 +2,7 @@
 
 import gzip
 from collections.abc import Callable
-from functools import lru_cache
+from functools import cache
 from pathlib import Path
 
 import pytest
@@ -12,7 +12,7 @@ from rateloom.calculation import Calculation, read_calculation
 OUTPUTS = Path(__file__).parent / "outputs"
 
 
-@lru_cache(maxsize=None)
+@cache
 def read_once(path: str) -> Calculation:
     return read_calculation(path)
 

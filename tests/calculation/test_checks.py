@@ -40,8 +40,8 @@ def test_electrons_decide_on_the_multiplicity(charge: int, multiplicity: int, ta
     ("printed", "usual"),
     [
         ("UB3LYP", "B3LYP"), ("rob3lyp", "B3LYP"), ("PBE1PBE", "PBE0"), ("wB97XD", "wB97X-D"), ("UM062X", "M06-2X"),
-        ("B3LYP/G", "B3LYP/G"), ("DLPNO-CCSD(T)", "DLPNO-CCSD(T)"), ("rhf", "HF"), ("UHF", "HF"), ("revPBE", "revPBE"),
-        ("RIMP2", "MP2"), ("cam-b3lyp", "CAM-B3LYP"), ("unheard", "unheard"),
+        ("B3LYP/G", "B3LYP/G"), ("DLPNO-CCSD(T)", "DLPNO-CCSD(T)"), ("rhf", "HF"), ("UHF", "HF"),
+        ("revPBE", "revPBE"), ("RIMP2", "MP2"), ("cam-b3lyp", "CAM-B3LYP"), ("unheard", "unheard"),
     ],
 )  # fmt: skip
 def test_methods_are_spelled_as_usual(printed: str, usual: str) -> None:

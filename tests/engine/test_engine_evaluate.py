@@ -208,7 +208,7 @@ def test_an_interrupt_inside_a_stage_keeps_the_others(toy: "Toy", monkeypatch: p
     [
         ("raise", "ValueError: no such luck at toy_stages.py:"),
         ("exit", "SystemExit: 3 at "),
-        ("memory", "MemoryError"),
+        ("memory", "Out of memory"),
     ],
 )
 @pytest.mark.parametrize("workers", [0, 2])
@@ -411,7 +411,11 @@ def test_a_stage_that_takes_too_long_over_a_file_is_stopped(toy: "Toy", workers:
     evaluation = toy.run(Processes(TABLE, workers) if workers else None, seconds_per_file=0.3)
 
     assert time.monotonic() - begun < 30
-    assert remarks_of(toy, evaluation, "slow") == [Remark("not-read", "reading took longer than 0.3 s")]
+    assert remarks_of(toy, evaluation, "slow") == [
+        Remark(
+            "not-read", "Reading took longer than 0.3 s. Allow more with --seconds-per-file, or take a whole file."
+        )
+    ]
     toy.read("slow", toy.folder / "0.txt", by=1.0)
     assert toy.value(toy.run(), "slow") is not None
 

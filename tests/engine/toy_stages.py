@@ -15,6 +15,7 @@ import numpy as np
 
 from rateloom.arrays import FloatArray
 from rateloom.engine import Outcome, Stage
+from rateloom.errors import TooLargeError
 from rateloom.remarks import Remark
 
 
@@ -41,10 +42,12 @@ def diary(line: str) -> None:
             file.write(line + "\n")
 
 
-def read(shift: Shift, name: str, data: bytes) -> Outcome:
+def read(shift: Shift, name: str, data: bytes, *, largest: int | None) -> Outcome:
     """Read numbers from text, the last digit rounded away."""
     diary(f"read {name}")
     _misbehave(shift.mode)
+    if largest is not None and len(data) > largest:
+        raise TooLargeError(f"{name} is larger than {largest} bytes")
     values = np.array([round(float(word), 3) for word in data.split()]) + shift.by
     remarks = (Remark("empty", "no numbers"),) if not len(values) else ()
     return Outcome(Numbers(values), remarks)

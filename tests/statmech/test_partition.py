@@ -5,7 +5,7 @@ from dataclasses import replace
 import mpmath
 import numpy as np
 import pytest
-from hypothesis import given
+from hypothesis import given, settings
 from hypothesis import strategies as st
 from scipy.constants import c, centi, h, k, m_u, physical_constants, pi
 
@@ -100,6 +100,7 @@ def test_spherical_top_is_nearly_the_sum_over_its_levels() -> None:
     assert q == pytest.approx(np.log(levels) - reduced / 4, abs=1e-12)
 
 
+@settings(deadline=None)
 @given(temperature=temperatures_of_flames, factor=st.floats(min_value=0.1, max_value=10.0))
 def test_rotation_depends_on_moment_times_temperature(temperature: float, factor: float) -> None:
     one = log_rotation(WATER.moments * factor, 2, np.array([temperature]))
@@ -108,6 +109,7 @@ def test_rotation_depends_on_moment_times_temperature(temperature: float, factor
     np.testing.assert_allclose(one, other, rtol=1e-12)
 
 
+@settings(deadline=None)
 @given(
     temperature=temperatures_of_flames,
     wavenumbers=st.lists(st.floats(min_value=5.0, max_value=5000.0), min_size=1, max_size=6),
@@ -119,7 +121,7 @@ def test_modes_add_up_and_grow_with_temperature(temperature: float, wavenumbers:
 
     assert by_mode.shape == (2, len(wavenumbers))
     np.testing.assert_allclose(by_mode.sum(axis=1), log_vibration(frequencies, grid), rtol=1e-13, atol=1e-16)
-    assert np.all(by_mode[:, 1] >= by_mode[:, 0])
+    assert np.all(by_mode[1] > by_mode[0])
     assert np.all(by_mode >= 0)
 
 

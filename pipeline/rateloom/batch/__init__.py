@@ -11,17 +11,19 @@ from rateloom.lazy import loader
 
 if TYPE_CHECKING:
     from rateloom.batch.audit import audit_job
+    from rateloom.batch.evaluation import FileLimits
     from rateloom.batch.plan import Plan, plan_job
     from rateloom.batch.run import run_job
     from rateloom.batch.summary import Summary
     from rateloom.batch.unchanged import unchanged_run
 
-__all__ = ["Plan", "Summary", "audit_job", "plan_job", "run_job", "unchanged_run"]
+__all__ = ["FileLimits", "Plan", "Summary", "audit_job", "plan_job", "run_job", "unchanged_run"]
 
 __getattr__ = loader(
     __name__,
     {
         "audit": ("audit_job",),
+        "evaluation": ("FileLimits",),
         "plan": ("Plan", "plan_job"),
         "run": ("run_job",),
         "summary": ("Summary",),

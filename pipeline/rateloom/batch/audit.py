@@ -3,7 +3,7 @@
 from pathlib import Path
 
 from rateloom.audit import Finding
-from rateloom.batch.evaluation import Progress, bring_up_to_date, crew
+from rateloom.batch.evaluation import DEFAULT_LIMITS, FileLimits, Progress, bring_up_to_date, crew
 from rateloom.batch.graph import WHOLE_JOB, graph_of
 from rateloom.batch.loading import load
 from rateloom.batch.verdict import verdict_of
@@ -11,7 +11,13 @@ from rateloom.engine import open_store
 
 
 def audit_job(
-    path: str, *, output: str | None = None, workers: int = 1, scheduler: str | None = None, progress: Progress
+    path: str,
+    *,
+    output: str | None = None,
+    workers: int = 1,
+    scheduler: str | None = None,
+    limits: FileLimits = DEFAULT_LIMITS,
+    progress: Progress,
 ) -> tuple[Finding, ...]:
     """Check every calculation, species and reaction of a job.
 
@@ -25,6 +31,8 @@ def audit_job(
         Processes to compute with.
     scheduler
         Address of a Dask scheduler whose workers compute instead.
+    limits
+        Of time and size, beyond which a file counts as unreadable.
     progress
         Called after each node.
 
@@ -42,6 +50,11 @@ def audit_job(
     graph = graph_of(job, rates=False)
     with open_store(Path(job.output)) as store:
         evaluated = bring_up_to_date(
-            graph, store, workers=crew(graph.nodes, store, workers, scheduler), wanted=(WHOLE_JOB,), progress=progress
+            graph,
+            store,
+            workers=crew(graph.nodes, store, workers, scheduler),
+            wanted=(WHOLE_JOB,),
+            limits=limits,
+            progress=progress,
         )
         return verdict_of(job, evaluated.remarks(), {}).findings

@@ -8,6 +8,7 @@ from typing import Any
 from rateloom.batch.graph import WHOLE_JOB, JobGraph
 from rateloom.batch.stages import STAGES
 from rateloom.engine import Cluster, Evaluation, Fingerprints, Node, Status, Store, build_graph, decode, evaluate
+from rateloom.engine.files import LARGEST_FILE
 from rateloom.engine.workers import InProcess, Processes, Workers
 from rateloom.remarks import Remark
 
@@ -17,6 +18,18 @@ FEW = 8
 
 Progress = Callable[[int, int, str], None]
 """Called with nodes done, nodes in all and the name of the last one."""
+
+
+@dataclass(frozen=True, slots=True)
+class FileLimits:
+    """What reading one file may take; beyond that the file counts as unreadable, until a run allows more."""
+
+    seconds: float = 600.0
+    largest: int = LARGEST_FILE
+    """[bytes], as it is and unpacked."""
+
+
+DEFAULT_LIMITS = FileLimits()
 
 
 @dataclass(frozen=True, slots=True)
@@ -66,6 +79,7 @@ def bring_up_to_date(
     *,
     workers: Workers,
     wanted: Iterable[str],
+    limits: FileLimits,
     progress: Progress,
 ) -> Evaluated:
     """Evaluate the graph of a job.
@@ -80,10 +94,12 @@ def bring_up_to_date(
         Where stages are carried out; they are let go at the end.
     wanted
         Nodes whose values will be read.
+    limits
+        Of time and size of each file.
     progress
         Told of every node.
     """
-    files = Fingerprints(store.files())
+    files = Fingerprints(store.files(), limits.largest)
     done = [0]
 
     def count(name: str) -> None:
@@ -91,7 +107,17 @@ def bring_up_to_date(
         progress(done[0], len(graph.nodes), name)
 
     try:
-        evaluation = evaluate(build_graph(graph.nodes.values()), STAGES, store, files, workers, count, wanted=wanted)
+        evaluation = evaluate(
+            build_graph(graph.nodes.values()),
+            STAGES,
+            store,
+            files,
+            workers,
+            count,
+            wanted=wanted,
+            seconds_per_file=limits.seconds,
+            largest_file=limits.largest,
+        )
     except BaseException:
         workers.close(now=True)
         raise

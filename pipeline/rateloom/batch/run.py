@@ -7,7 +7,7 @@ from dataclasses import replace
 from pathlib import Path
 
 from rateloom.audit import SEVERITIES, Finding
-from rateloom.batch.evaluation import Evaluated, Progress, bring_up_to_date, crew
+from rateloom.batch.evaluation import DEFAULT_LIMITS, Evaluated, FileLimits, Progress, bring_up_to_date, crew
 from rateloom.batch.graph import WHOLE_JOB, graph_of
 from rateloom.batch.loading import load
 from rateloom.batch.stages import ReactionRows, SpeciesRows
@@ -20,7 +20,13 @@ from rateloom.output import changes_table, findings_table, provenance, read_file
 
 
 def run_job(
-    path: str, *, output: str | None = None, workers: int = 1, scheduler: str | None = None, progress: Progress
+    path: str,
+    *,
+    output: str | None = None,
+    workers: int = 1,
+    scheduler: str | None = None,
+    limits: FileLimits = DEFAULT_LIMITS,
+    progress: Progress,
 ) -> Summary:
     """Bring the output folder of a job up to date.
 
@@ -34,6 +40,8 @@ def run_job(
         Processes to compute with.
     scheduler
         Address of a Dask scheduler whose workers compute instead.
+    limits
+        Of time and size, beyond which a file counts as unreadable.
     progress
         Called after each node.
 
@@ -55,14 +63,21 @@ def run_job(
         known_before = set(store.past())
         wanted = (WHOLE_JOB, *graph.species_rows.values(), *graph.reaction_rows.values())
         evaluated = bring_up_to_date(
-            graph, store, workers=crew(graph.nodes, store, workers, scheduler), wanted=wanted, progress=progress
+            graph,
+            store,
+            workers=crew(graph.nodes, store, workers, scheduler),
+            wanted=wanted,
+            limits=limits,
+            progress=progress,
         )
         rows = {name: evaluated.value(node) for name, node in graph.reaction_rows.items()}
         missing = {name: value is None for name, value in rows.items()}
         verdict = verdict_of(job, evaluated.remarks(), missing)
         tables = _tables(job, evaluated, verdict, rows)
         tables["run.json"] = _provenance(job, evaluated, *evaluated.counts())
-        tables["changes.csv"] = changes_table(read_file(folder, "rates.csv"), tables["rates.csv"])
+        changes = changes_table(read_file(folder, "rates.csv"), tables["rates.csv"])
+        # What changed goes first: once the new rates stand there, nobody can tell any more.
+        tables = {"changes.csv": changes, **tables}
         write_files(folder, tables)
         store.keep_only(set(evaluated.evaluation.keys.values()))
         summary = _summary(job, evaluated, verdict, known_before)

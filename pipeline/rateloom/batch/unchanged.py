@@ -13,7 +13,7 @@ from pathlib import Path
 import rateloom
 from rateloom.batch.summary import Summary
 from rateloom.engine import STORE_NAME, FileState, Store, decode, digest_of, encode, open_store
-from rateloom.output import read_file, write_files
+from rateloom.output import write_files
 
 NOTE = "last run"
 OUTPUT_KEY = b"output:"
@@ -111,7 +111,7 @@ def unchanged_run(path: str, output: str | None = None) -> Summary | None:
         last = _last_run(store, str(job), folder)
         if last is None:
             return None
-        write_files(folder, {name: data for name, data in last.now.items() if read_file(folder, name) != data})
+        write_files(folder, last.now)
     return replace(last.summary, seconds=time.monotonic() - begun)
 
 

@@ -1,27 +1,21 @@
 """The bytes of one output file as text with line numbers: plain, gzip, bzip2 or xz, told by their first bytes."""
 
-import bz2
-import gzip
-import lzma
-import zlib
 from bisect import bisect_right
-from collections.abc import Callable
 from dataclasses import dataclass
 from itertools import accumulate
 from pathlib import Path
 
-from rateloom.errors import CalculationError
+from rateloom.calculation.compression import decompress
+from rateloom.errors import CalculationError, TooLargeError
 
-COMPRESSIONS: tuple[tuple[bytes, str, Callable[[bytes], bytes]], ...] = (
-    (b"\x1f\x8b", "gzip", gzip.decompress),
-    (b"BZh", "bzip2", bz2.decompress),
-    (b"\xfd7zXZ\x00", "xz", lzma.decompress),
-)
+LARGEST = 1_000_000_000
+"""Nothing that unpacks to more is read unless asked for [bytes]."""
+LONGEST_LINE = 1_000_000
+"""No program prints a longer line [bytes]; patterns tried on one take for ever."""
 WIDE_TEXT = (b"\xff\xfe", b"\xfe\xff")
 CONTROL_CHARACTERS = dict.fromkeys((*range(9), *range(11, 32), 133, 8232, 8233), " ")
 BINARY = 0.01
 """Share of zero bytes above which a file is no text; some programs print a few of them."""
-BROKEN_COMPRESSION = (OSError, EOFError, ValueError, zlib.error, lzma.LZMAError)
 
 
 @dataclass(frozen=True, slots=True)
@@ -48,15 +42,23 @@ class Output:
         return self.starts[line - 1] if line <= len(self.starts) else len(self.text)
 
 
-def load(path: str) -> bytes:
+def load(path: str, largest: int | None = LARGEST) -> bytes:
     """Read the bytes of a file.
 
     Raises
     ------
     CalculationError
         The file is missing or cannot be read.
+    TooLargeError
+        It has more than ``largest`` bytes.
     """
     try:
+        if largest is not None and Path(path).stat().st_size > largest:
+            msg = (
+                f"{path}: the file is larger than {largest / 1e6:g} MB. "
+                "If it is an output all the same, allow more with --largest-file."
+            )
+            raise TooLargeError(msg)
         return Path(path).read_bytes()
     except FileNotFoundError as error:
         msg = f"{path}: there is no such file. Check the path, relative to the folder `calculations` of the job file."
@@ -69,15 +71,19 @@ def load(path: str) -> bytes:
         raise CalculationError(msg) from error
 
 
-def open_output(name: str, data: bytes) -> Output:
+def open_output(name: str, data: bytes, largest: int | None = LARGEST) -> Output:
     """Decompress and decode an output file.
 
     Raises
     ------
     CalculationError
-        The file is empty, binary, or its compressed data are broken.
+        The file is empty, binary, has a line that no program prints, or its compressed data are broken.
+    TooLargeError
+        It unpacks to more than ``largest`` bytes.
     """
-    text = normal_lines(decode(name, decompress(name, data)))
+    data = decompress(name, data, largest)
+    refuse_endless_line(name, data)
+    text = normal_lines(decode(name, data))
     if not text.strip():
         msg = f"{name}: the file is empty. Run the calculation again or correct the path."
         raise CalculationError(msg)
@@ -85,16 +91,26 @@ def open_output(name: str, data: bytes) -> Output:
     return Output(name, text, (0, *accumulate(lengths[:-1])))
 
 
-def decompress(name: str, data: bytes) -> bytes:
-    """Undo one or more layers of compression."""
-    for magic, label, expand in COMPRESSIONS:
-        if data.startswith(magic):
-            try:
-                return decompress(name, expand(data))
-            except BROKEN_COMPRESSION as error:
-                msg = f"{name}: the {label} data are damaged or cut short ({error}). Copy or compress the file again."
-                raise CalculationError(msg) from error
-    return data
+def refuse_endless_line(name: str, data: bytes) -> None:
+    """Look for a line too long to be printed by a program, in strides of that length.
+
+    Raises
+    ------
+    CalculationError
+        There is one.
+    """
+    begin = 0
+    while len(data) - begin > LONGEST_LINE:
+        end = begin + LONGEST_LINE
+        last = max(data.rfind(b"\n", begin, end), data.rfind(b"\r", begin, end))
+        if last < 0:
+            line = data.count(b"\n", 0, begin) + 1
+            msg = (
+                f"{name}:{line}: line {line} is longer than {LONGEST_LINE} characters, which no program prints. "
+                "The file is damaged or is no text output: take the original."
+            )
+            raise CalculationError(msg)
+        begin = last + 1
 
 
 def decode(name: str, data: bytes) -> str:

@@ -1,12 +1,12 @@
 """One output file to one record: bytes, text, lines, cclib, record, checks."""
 
-from rateloom.calculation.output import Output, load, open_output
+from rateloom.calculation.output import LARGEST, Output, load, open_output
 from rateloom.calculation.programs import PROGRAMS, Program, recognise
 from rateloom.calculation.record import Calculation
 from rateloom.errors import CalculationError
 
 
-def read_calculation(path: str, data: bytes | None = None) -> Calculation:
+def read_calculation(path: str, data: bytes | None = None, largest: int | None = LARGEST) -> Calculation:
     """Read one output file of a quantum-chemistry program.
 
     Parameters
@@ -15,6 +15,8 @@ def read_calculation(path: str, data: bytes | None = None) -> Calculation:
         Path of the output, plain or compressed with gzip, bzip2 or xz; it stands in messages.
     data : bytes, optional
         Content of the file where the caller has read it already.
+    largest : int, optional
+        How many bytes it may unpack to; None sets no limit.
 
     Returns
     -------
@@ -25,8 +27,10 @@ def read_calculation(path: str, data: bytes | None = None) -> Calculation:
     ------
     CalculationError
         The file is missing, empty, binary, damaged, of no known program, or reading it stops.
+    TooLargeError
+        It unpacks to more than ``largest`` bytes.
     """
-    output = open_output(path, load(path) if data is None else data)
+    output = open_output(path, load(path, largest) if data is None else data, largest)
     program = recognise(output.text)
     if program is None:
         raise unknown(output)

@@ -2,7 +2,7 @@
 
 import argparse
 
-from rateloom.cli.options import add_job_options, workers_of
+from rateloom.cli.options import add_job_options, bytes_of, workers_of
 from rateloom.cli.progress import progress
 
 FAIL_ON = ("error", "warning", "note")
@@ -33,13 +33,18 @@ def add_parser(subparsers: "argparse._SubParsersAction[argparse.ArgumentParser]"
 def run(args: argparse.Namespace) -> int:
     """Audit a job, print the findings."""
     from rateloom.audit import check_codes, fails
-    from rateloom.batch import audit_job
+    from rateloom.batch import FileLimits, audit_job
     from rateloom.cli.findings import print_findings
 
     wanted = check_codes(args.only or ())
     with progress() as report:
         findings = audit_job(
-            args.job, output=args.output, workers=workers_of(args), scheduler=args.scheduler, progress=report
+            args.job,
+            output=args.output,
+            workers=workers_of(args),
+            scheduler=args.scheduler,
+            limits=FileLimits(args.seconds_per_file, bytes_of(args)),
+            progress=report,
         )
     shown = [finding for finding in findings if not wanted or finding.code in wanted]
     print_findings(shown, as_json=args.json)

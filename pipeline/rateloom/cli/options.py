@@ -5,6 +5,11 @@ import os
 from urllib.parse import urlsplit
 
 
+LARGEST_FILE_MB = 1000
+SECONDS_PER_FILE = 600
+"""The defaults of the rooms that read, written here so that help is shown without loading them."""
+
+
 def add_job_options(parser: argparse.ArgumentParser) -> None:
     """Add what every command that computes takes."""
     parser.add_argument("job", metavar="JOB", help="the job file (YAML)")
@@ -18,6 +23,30 @@ def add_job_options(parser: argparse.ArgumentParser) -> None:
         "(certificates: those of the configuration of Dask)",
     )
     parser.add_argument("--output", metavar="DIR", help="use this folder instead of the one that the job file names")
+    add_size_option(parser)
+    parser.add_argument(
+        "--seconds-per-file",
+        type=_count,
+        default=SECONDS_PER_FILE,
+        metavar="N",
+        help="give up a file whose reading takes longer (default: %(default)s)",
+    )
+
+
+def add_size_option(parser: argparse.ArgumentParser) -> None:
+    """Add what every command that reads outputs takes."""
+    parser.add_argument(
+        "--largest-file",
+        type=_count,
+        default=LARGEST_FILE_MB,
+        metavar="MB",
+        help="read no file that is larger, as it is or unpacked (default: %(default)s)",
+    )
+
+
+def bytes_of(args: argparse.Namespace) -> int:
+    """Give the size of the largest file that may be read."""
+    return int(args.largest_file) * 1_000_000
 
 
 def workers_of(args: argparse.Namespace) -> int:
@@ -26,7 +55,7 @@ def workers_of(args: argparse.Namespace) -> int:
 
 
 def _count(text: str) -> int:
-    """Read a number of workers.
+    """Read a number of things.
 
     Raises
     ------

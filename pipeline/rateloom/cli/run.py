@@ -3,7 +3,7 @@
 import argparse
 import sys
 
-from rateloom.cli.options import add_job_options, workers_of
+from rateloom.cli.options import add_job_options, bytes_of, workers_of
 from rateloom.cli.progress import progress
 
 
@@ -25,11 +25,16 @@ def run(args: argparse.Namespace) -> int:
 
     summary = unchanged_run(args.job, args.output)
     if summary is None:
-        from rateloom.batch import run_job
+        from rateloom.batch import FileLimits, run_job
 
         with progress() as report:
             summary = run_job(
-                args.job, output=args.output, workers=workers_of(args), scheduler=args.scheduler, progress=report
+                args.job,
+                output=args.output,
+                workers=workers_of(args),
+                scheduler=args.scheduler,
+                limits=FileLimits(args.seconds_per_file, bytes_of(args)),
+                progress=report,
             )
     for fault in summary.faults:
         print(f"A fault of the program in {fault}", file=sys.stderr)

@@ -4,6 +4,7 @@ import argparse
 import json
 import sys
 
+from rateloom.cli.options import add_size_option, bytes_of
 from rateloom.errors import CalculationError
 
 
@@ -12,6 +13,7 @@ def add_parser(subparsers: "argparse._SubParsersAction[argparse.ArgumentParser]"
     command = subparsers.add_parser("show", help="say what is read from output files, without a job")
     command.add_argument("files", metavar="FILE", nargs="+", help="output of a program, plain, .gz, .bz2 or .xz")
     command.add_argument("--json", action="store_true", help="one JSON object (a list of them for several files)")
+    add_size_option(command)
     command.set_defaults(run=run)
 
 
@@ -22,7 +24,7 @@ def run(args: argparse.Namespace) -> int:
     status, found = 0, []
     for path in args.files:
         try:
-            calculation = read_calculation(path)
+            calculation = read_calculation(path, largest=bytes_of(args))
         except CalculationError as error:
             print(error, file=sys.stderr)
             status = 2

@@ -59,6 +59,7 @@ def evaluate(
     *,
     wanted: Iterable[str] = (),
     seconds_per_file: float | None = None,
+    largest_file: int | None = None,
 ) -> Evaluation:
     """Bring every node of a graph up to date.
 
@@ -82,6 +83,8 @@ def evaluate(
         Nodes whose values the caller will read: a damaged one is computed again.
     seconds_per_file
         A stage that reads one file for longer gives what it gives for an unreadable file; None sets no limit.
+    largest_file
+        The same for a file that is larger [bytes] when it is unpacked.
 
     Raises
     ------
@@ -90,7 +93,8 @@ def evaluate(
     ClusterError
         The cluster cannot be used any more.
     """
-    return _Loop(graph, stages, store, files, workers, progress, tuple(wanted), seconds_per_file).run()
+    limits = seconds_per_file, largest_file
+    return _Loop(graph, stages, store, files, workers, progress, tuple(wanted), limits).run()
 
 
 class _Loop:
@@ -105,7 +109,7 @@ class _Loop:
         workers: Workers,
         progress: Callable[[str], None],
         wanted: tuple[str, ...],
-        seconds_per_file: float | None,
+        limits: tuple[float | None, int | None],
     ) -> None:
         self._graph = graph
         self._stages = stages
@@ -114,7 +118,7 @@ class _Loop:
         self._workers = workers
         self._progress = progress
         self._wanted = wanted
-        self._seconds_per_file = seconds_per_file
+        self._seconds_per_file, self._largest_file = limits
         self._past = store.past()
         self._values = Values(store)
         self._pace = Pace()
@@ -211,6 +215,7 @@ class _Loop:
             file_error=state.error,
             file_data=_content(node.file) if self._bring_files and not state.error else None,
             seconds=self._seconds_per_file,
+            largest=self._largest_file,
         )
 
     def _value(self, name: str) -> bytes:
@@ -219,7 +224,9 @@ class _Loop:
     def _has_lost_wanted(self) -> bool:
         """Look whether every value the caller will read is sound; begin again where one is not."""
         keys, digests = self._schedule.keys, self._schedule.digests
-        sound = all(digests[name] == NO_VALUE or self._store.value(keys[name]) is not None for name in self._wanted)
+        sound = not self._store.is_torn and all(
+            digests[name] == NO_VALUE or self._store.value(keys[name]) is not None for name in self._wanted
+        )
         if not sound:
             self._mend()
         return not sound
@@ -304,7 +311,7 @@ class _Loop:
             self._fault(result.name, result.detail)
             return
         before = self._files[node.file]
-        if result.why == "too-slow":
+        if result.why == "beyond-limits":
             self._files.give_up(node.file, result.detail)
         else:
             self._look_again(node.file, before)

@@ -17,8 +17,8 @@ RACY_NANOSECONDS = 2_000_000_000
 """Coarsest time stamp of a file system in use (FAT: 2 s)."""
 UNREADABLE = b"unreadable: "
 """How the digest of a file that could not be read begins."""
-LARGEST_FILE = 4_000_000_000
-"""Nothing larger is read [bytes]: a worker holds the whole file in memory."""
+LARGEST_FILE = 1_000_000_000
+"""Nothing larger is read [bytes] unless asked for: a worker holds the whole file in memory."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -74,7 +74,9 @@ def _fault_of(status: os.stat_result, largest: int) -> str:
         return "Is a directory"
     if not stat.S_ISREG(status.st_mode):
         return "Not a regular file"
-    return f"Larger than the limit of {largest} bytes" if status.st_size > largest else ""
+    if status.st_size <= largest:
+        return ""
+    return f"Larger than {largest / 1e6:g} MB. If it is an output all the same, allow more with --largest-file."
 
 
 class Fingerprints:

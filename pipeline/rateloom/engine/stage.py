@@ -10,6 +10,7 @@ from typing import TYPE_CHECKING, Any, Optional
 
 from rateloom.engine.codec import decode, digest_of, encode
 from rateloom.engine.limits import TimeIsUp, time_limit
+from rateloom.errors import TooLargeError
 from rateloom.remarks import Remark
 
 if TYPE_CHECKING:
@@ -37,8 +38,8 @@ class Stage:
     """Raised by hand whenever equal inputs may give another result."""
     compute: Callable[..., Outcome]
     """Called with the parameters and the input values in order (None for an input that gave nothing); a stage that
-    reads a file is called with the parameters, the name of the file (without its folder, which no key knows of) and
-    its bytes."""
+    reads a file is called with the parameters, the name of the file (without its folder, which no key knows of), its
+    bytes and, as ``largest``, how many it may unpack them to; more than that raises ``TooLargeError``."""
     parameters: Any
     """Type of the parameters."""
     value: Any
@@ -137,6 +138,8 @@ class Task:
     """The file itself, for a worker that cannot see it."""
     seconds: float | None = None
     """How long the reading of the file may take [s]."""
+    largest: int | None = None
+    """How large the file may be when it is unpacked [bytes]."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -157,7 +160,8 @@ class Undone:
 
     name: str
     why: str
-    """``file-changed``, ``file-not-visible``, ``too-slow`` or ``fault`` (the stage raised)."""
+    """``file-changed``, ``file-not-visible``, ``beyond-limits`` (of time, size or memory) or ``fault`` (the stage
+    raised)."""
     detail: str = ""
 
 
@@ -171,7 +175,13 @@ def run_task(task: Task, stages: Mapping[str, Stage]) -> Done | Undone:
         remarks = encode(outcome.remarks) if outcome.remarks else b""
         return Done(task.name, encode(outcome.value), remarks, time.perf_counter() - begun)
     except TimeIsUp:
-        return Undone(task.name, "too-slow", f"reading took longer than {task.seconds:g} s")
+        advice = "Allow more with --seconds-per-file, or take a whole file."
+        return Undone(task.name, "beyond-limits", f"Reading took longer than {task.seconds:g} s. {advice}")
+    except TooLargeError as error:
+        return Undone(task.name, "beyond-limits", error.message)
+    except MemoryError:
+        advice = "Compute with fewer workers (--workers), or where there is more memory."
+        return Undone(task.name, "beyond-limits" if task.file else "fault", f"Out of memory. {advice}")
     except (Exception, SystemExit) as error:  # a library may call sys.exit
         return Undone(task.name, "fault", _describe(error))
 
@@ -189,7 +199,7 @@ def _outcome(task: Task, stages: Mapping[str, Stage]) -> Outcome | Undone:
     if isinstance(data, Undone):
         return data
     with time_limit(task.seconds):
-        return stage.compute(parameters, Path(task.file or "").name, data)
+        return stage.compute(parameters, Path(task.file or "").name, data, largest=task.largest)
 
 
 def _file_of(task: Task) -> bytes | Undone:

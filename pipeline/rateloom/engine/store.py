@@ -19,6 +19,7 @@ from rateloom.engine.files import FileState
 from rateloom.engine.schedule import Past
 from rateloom.engine.store_file import (
     SQLITE_ERRORS,
+    MENDED_NAME,
     STORE_NAME,
     connect_reader,
     hold,
@@ -56,6 +57,8 @@ class Store:
         self._connection = connection
         self._inode = self._path.stat().st_ino if self._path else 0
         self._index: dict[bytes, bytes] | None = None
+        self.is_torn = False
+        """Whether results were met that cannot be read any more: remarks may be missing until it is mended."""
 
     def close(self) -> None:
         """Close the file."""
@@ -71,14 +74,18 @@ class Store:
     def _sound_rows(self, condition: str) -> list[ResultRow]:
         """Give the rows whose seal is right, as far as the file can be read."""
         rows: list[ResultRow] = []
-        with contextlib.suppress(*SQLITE_ERRORS):
+        try:
             # One row at a time: what comes before a damaged page is kept.
             rows.extend(self._connection.execute(f"SELECT key, digest, seal, remarks FROM results {condition}"))
+        except SQLITE_ERRORS:
+            self.is_torn = True
         try:
-            return [row for row in rows if _seal(row[0], row[1], row[3]) == row[2]]
+            sound = [row for row in rows if _seal(row[0], row[1], row[3]) == row[2]]
         except TypeError:  # a damaged row holds a number
             blobs = [row for row in rows if all(isinstance(column, bytes) for column in row)]
-            return [row for row in blobs if _seal(row[0], row[1], row[3]) == row[2]]
+            sound = [row for row in blobs if _seal(row[0], row[1], row[3]) == row[2]]
+        self.is_torn |= len(sound) < len(rows)
+        return sound
 
     def digest(self, key: bytes) -> bytes | None:
         """Give the digest of a stored result, None where there is none."""
@@ -145,7 +152,7 @@ class Store:
         if self._path is None:
             return 0
         rows = [row for row in self._sound_rows("") if self._content(row[1]) is not None]
-        beside = self._path.with_name(f"{STORE_NAME}.new")
+        beside = self._path.with_name(MENDED_NAME)
         remove_store(beside)
         with contextlib.closing(Store(open_connection(beside), beside)) as new:
             for begin in range(0, len(rows), 1000):
@@ -265,6 +272,7 @@ def open_store(folder: Path) -> Iterator[Store]:
         try:
             folder.mkdir(parents=True, exist_ok=True)
             stack.enter_context(hold(folder))
+            remove_store(folder / MENDED_NAME)  # of a run that was killed while it mended the store
             store = Store(open_connection(folder / STORE_NAME), folder / STORE_NAME)
         except OSError as error:
             msg = f"{folder} cannot be used: {error.strerror or error}. Name another folder with --output."

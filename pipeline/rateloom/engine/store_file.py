@@ -11,6 +11,7 @@ from pathlib import Path
 from rateloom.errors import StoreBusyError, StoreError, StoreVersionError
 
 STORE_NAME = ".store.sqlite"
+MENDED_NAME = f"{STORE_NAME}.new"
 LOCK_NAME = ".store.lock"
 STORE_VERSION = 1
 PROGRAM_MARK = 0x524C0000

@@ -4,12 +4,13 @@ All take batches of tasks and give futures. Workers hold their linear-algebra li
 any number of workers gives the same bytes.
 """
 
+import contextlib
 import importlib
 import os
 import signal
 import threading
 import time
-from collections.abc import Mapping, Sequence
+from collections.abc import Iterator, Mapping, Sequence
 from concurrent.futures import BrokenExecutor, Future
 from functools import cache
 from typing import Any, Protocol
@@ -101,6 +102,16 @@ def _settle_in(parent: int) -> None:
     threading.Thread(target=watch, name="parent watch", daemon=True).start()
 
 
+@contextlib.contextmanager
+def _interrupt_held_back() -> Iterator[None]:
+    """Hold SIGINT back while processes are started: these inherit it and are deaf to the terminal from birth."""
+    before = signal.pthread_sigmask(signal.SIG_BLOCK, {signal.SIGINT})
+    try:
+        yield
+    finally:
+        signal.pthread_sigmask(signal.SIG_SETMASK, before)
+
+
 class Processes:
     """Worker processes on this machine, started when the first batch comes."""
 
@@ -119,7 +130,8 @@ class Processes:
                 max_workers=self.count, env=ONE_THREAD, initializer=_settle_in, initargs=(os.getpid(),)
             )
         try:
-            return self._executor.submit(run_batch, self._stages, list(tasks))
+            with _interrupt_held_back():
+                return self._executor.submit(run_batch, self._stages, list(tasks))
         except BrokenExecutor:
             # A process died since the last batch; the futures of the batches it took along say so.
             self.close(now=True)

@@ -14,7 +14,7 @@ def write_files(folder: Path, contents: Mapping[str, bytes]) -> None:
     Parameters
     ----------
     folder
-        Exists already.
+        Exists already, held by this run alone: what a killed one left beside the names is removed.
     contents
         By file name; renamed in this order. A file that holds the same bytes already is left alone.
 
@@ -23,9 +23,12 @@ def write_files(folder: Path, contents: Mapping[str, bytes]) -> None:
     OutputError
         One cannot be written; those that stood there are untouched then.
     """
-    beside = {name: folder / f".{name}.{os.getpid()}.part" for name in contents}
+    changed = {name: data for name, data in contents.items() if read_file(folder, name) != data}
+    beside = {name: folder / f".{name}.{os.getpid()}.part" for name in changed}
     try:
-        for name, data in contents.items():
+        for left in folder.glob(".*.part"):
+            left.unlink()
+        for name, data in changed.items():
             with beside[name].open("wb") as file:
                 file.write(data)
                 file.flush()

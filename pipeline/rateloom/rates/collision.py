@@ -32,7 +32,7 @@ def hard_sphere_rate_coefficient(reduced_mass: float, diameter: float, temperatu
     References
     ----------
     .. [1] D. A. McQuarrie, J. D. Simon, Physical Chemistry: A Molecular Approach, University Science Books, 1997,
-       ch. 28 (from memory).
+       ch. 30 (from memory).
     """
     return mean_relative_speed(reduced_mass, temperatures) * _cross_section(diameter)
 

@@ -107,9 +107,8 @@ def participant(species: Species, temperatures: FloatArray, pressure: float) -> 
     ----------
     .. [1] D. A. McQuarrie, Statistical Mechanics, Harper & Row, 1976, ch. 5, 6 and 8 (from memory).
     """
-    return Participant(
-        species, partition_functions(species, temperatures), thermochemistry(species, temperatures, pressure)
-    )
+    partition = partition_functions(species, temperatures)
+    return Participant(species, partition, thermochemistry(species, temperatures, pressure, partition))
 
 
 def evaluate_reaction(

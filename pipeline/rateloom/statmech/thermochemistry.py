@@ -46,7 +46,7 @@ def thermochemistry(
     temperatures : ndarray, shape (n_temperatures,)
         [K], above zero.
     pressure
-        Standard pressure [Pa].
+        Standard pressure [Pa], above zero.
     partition
         Of the same species at the same temperatures, where they have been evaluated already.
 
@@ -58,12 +58,15 @@ def thermochemistry(
     Raises
     ------
     ValueError
-        A temperature, a frequency or a moment of inertia is not above zero.
+        The pressure, a temperature, a frequency or a moment of inertia is not above zero.
 
     References
     ----------
     .. [1] D. A. McQuarrie, Statistical Mechanics, Harper & Row, 1976, ch. 8 (from memory).
     """
+    if not pressure > 0.0:
+        msg = f"the standard pressure must be above 0 Pa, not {pressure:.6g} Pa"
+        raise ValueError(msg)
     if partition is None:
         partition = partition_functions(species, temperatures)
     vibration_energy, vibration_capacity = _vibration(species.frequencies, temperatures)

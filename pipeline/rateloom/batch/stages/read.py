@@ -4,7 +4,7 @@ from dataclasses import dataclass, replace
 
 from rateloom.calculation import Calculation, read_calculation
 from rateloom.engine import Outcome
-from rateloom.errors import CalculationError
+from rateloom.errors import CalculationError, TooLargeError
 from rateloom.remarks import Remark
 
 
@@ -13,10 +13,18 @@ class Reading:
     """How files are read."""
 
 
-def read(_options: Reading, path: str, data: bytes) -> Outcome:
-    """Read one output file."""
+def read(_options: Reading, path: str, data: bytes, *, largest: int | None) -> Outcome:
+    """Read one output file.
+
+    Raises
+    ------
+    TooLargeError
+        It unpacks to more than ``largest`` bytes: a matter of the run's limits, so that no result is kept.
+    """
     try:
-        calculation = read_calculation(path, data)
+        calculation = read_calculation(path, data, largest=largest)
+    except TooLargeError:
+        raise
     except CalculationError as error:
         return unreadable(error.message)
     return Outcome(replace(calculation, remarks=()), calculation.remarks)

@@ -22,15 +22,17 @@ SEMIEMPIRICAL = ("AM1", "PM3", "PM6", "PM7", "MNDO", "INDO", "CNDO", "ZINDO", "P
 ROUTE = r"^ -{5,}\n((?: #.*\n)(?: .*\n)*?) -{5,}$"
 OLD_NAMES = {"B+HF-LYP": "B3LYP", "B-LYP": "BLYP", "B-P86": "BP86", "B+HF-P86": "B3P86", "B+HF-PW91": "B3PW91"}
 AMPLITUDES = (("QCISD", "QCISD"), ("CCSD", "CCSD"), ("CCD", "CCD"), ("BD", "BCCD"))
+FORTRAN = r"(-?\d\.\d+D[-+]\d+)"
+"""The archive at the end repeats some energies in this place with fewer digits and no exponent."""
 LINES = (
     ("ONIOM", r"^ ONIOM: extrapolated energy\s*=\s*" + NUMBER),
     ("MP2", r"EUMP2\s*=\s*" + NUMBER),
     ("MP3", r"EUMP3=\s*" + NUMBER),
     ("MP4(SDQ)", r"UMP4\(SDQ\)=\s*" + NUMBER),
     ("MP4", r"UMP4\(SDTQ\)=\s*" + NUMBER),
-    ("CCSD(T)", r"^ CCSD\(T\)=\s*" + NUMBER),
-    ("QCISD(T)", r"^ QCISD\(T\)=\s*" + NUMBER),
-    ("BCCD(T)", r"^ BD\(T\)=\s*" + NUMBER),
+    ("CCSD(T)", r"^ CCSD\(T\)=\s*" + FORTRAN),
+    ("QCISD(T)", r"^ QCISD\(T\)=\s*" + FORTRAN),
+    ("BCCD(T)", r"^ BD\(T\)=\s*" + FORTRAN),
     ("double-hybrid DFT", r"^ *E2\([^)]*\)\s*=\s*\S+\s+E\([^)]*\)\s*=\s*" + NUMBER),
 )
 
