@@ -70,13 +70,21 @@ def judge(
             subject,
             remark.code,
             severities.get(remark.code) or CODES[remark.code],
-            remark.message,
+            _sentence(remark.message),
             remark.value,
             remark.limit,
             accept.get(remark.code, ""),
         )
         for remark in dict.fromkeys(remarks)
     ]
+
+
+def _sentence(message: str) -> str:
+    """Begin with a capital, unless a name or a file begins the message, and end with a full stop."""
+    first = message.split(maxsplit=1)[0].rstrip(":,") if message else ""
+    if first.isalpha() and first.islower():
+        message = message[0].upper() + message[1:]
+    return message if message.endswith((".", "?", ")")) else f"{message}."
 
 
 def unmatched_accepts(subject: Subject, accept: Mapping[str, str], found: Iterable[Finding]) -> list[Remark]:
