@@ -13,7 +13,7 @@ from rateloom.calculation.motion import count_rigid, same_shape
 from rateloom.calculation.normal_modes import modes_of_hessian
 from rateloom.calculation.output import Output
 from rateloom.calculation.programs import Program
-from rateloom.calculation.programs.program import last_group, number, pattern, positions
+from rateloom.calculation.programs.program import GHZ_PER_CM, last_group, number, pattern, positions
 from rateloom.calculation.record import Calculation, Level
 from rateloom.calculation.track import Entry, Track
 from rateloom.errors import CalculationError
@@ -21,8 +21,6 @@ from rateloom.remarks import Remark
 
 SAME_GEOMETRY = 5e-4
 """Two printed geometries are one if no distance differs by more [angstrom]: the steps of a search are larger."""
-LIGHT_CENTIMETRES = 29.9792458
-"""GHz in one cm-1, exact."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -253,7 +251,7 @@ def rotational_constants(text: str, program: Program, track: Track, line: int) -
         values = program.rotational_constants(text)
     else:
         printed = track.last("rotconsts", line)
-        values = None if printed is None or not len(printed) else np.ravel(np.array(printed[-1])) / LIGHT_CENTIMETRES
+        values = None if printed is None or not len(printed) else np.ravel(np.array(printed[-1])) / GHZ_PER_CM
     if values is None:
         return None
     values = values[np.isfinite(values) & (values > 0)]

@@ -82,8 +82,9 @@ def open_output(name: str, data: bytes, largest: int | None = LARGEST) -> Output
         It unpacks to more than ``largest`` bytes.
     """
     data = decompress(name, data, largest)
+    text = decode(name, data)
     refuse_endless_line(name, data)
-    text = normal_lines(decode(name, data))
+    text = normal_lines(text)
     if not text.strip():
         msg = f"{name}: the file is empty. Run the calculation again or correct the path."
         raise CalculationError(msg)

@@ -4,7 +4,6 @@ import argparse
 import os
 from urllib.parse import urlsplit
 
-
 LARGEST_FILE_MB = 1000
 SECONDS_PER_FILE = 600
 """The defaults of the rooms that read, written here so that help is shown without loading them."""

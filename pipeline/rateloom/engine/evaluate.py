@@ -222,7 +222,7 @@ class _Loop:
         return self._values.load(self._schedule.keys[name], self._schedule.digests[name])
 
     def _has_lost_wanted(self) -> bool:
-        """Look whether every value the caller will read is sound; begin again where one is not."""
+        """Look whether all that the caller will read is sound; mend the store and begin again where it is not."""
         keys, digests = self._schedule.keys, self._schedule.digests
         sound = not self._store.is_torn and all(
             digests[name] == NO_VALUE or self._store.value(keys[name]) is not None for name in self._wanted

@@ -18,8 +18,8 @@ from rateloom.engine.codec import decode, digest_of, encode
 from rateloom.engine.files import FileState
 from rateloom.engine.schedule import Past
 from rateloom.engine.store_file import (
-    SQLITE_ERRORS,
     MENDED_NAME,
+    SQLITE_ERRORS,
     STORE_NAME,
     connect_reader,
     hold,

@@ -43,7 +43,7 @@ STAGES: MappingProxyType[str, Stage] = MappingProxyType(
             Stage("check-reaction", 1, check_reaction.check, ReactionCheck, check_reaction.VALUE),
             Stage("check-job", 1, check_job.check, JobCheck, check_job.VALUE),
             Stage("partition", 1, partition.tabulate, Grid, partition.VALUE),
-            Stage("rate", 1, rate.evaluate, RateRequest, rate.VALUE),
+            Stage("rate", 2, rate.evaluate, RateRequest, rate.VALUE),
             Stage("fit", 1, fit.fit, FitRequest, fit.VALUE),
             Stage("check-rate", 1, check_rate.check, RateCheck, check_rate.VALUE),
             Stage("species-rows", 1, rows.write_species, SpeciesRowsRequest, SpeciesRows),

@@ -6,7 +6,15 @@ import numpy as np
 
 from rateloom.arrays import FloatArray
 from rateloom.calculation.names import usual_basis, usual_method
-from rateloom.calculation.programs.program import NUMBER, PrintedEnergy, Program, last_group, number, pattern
+from rateloom.calculation.programs.program import (
+    GHZ_PER_CM,
+    NUMBER,
+    PrintedEnergy,
+    Program,
+    last_group,
+    number,
+    pattern,
+)
 from rateloom.calculation.record import Level
 
 BASIS_NAMES = {"CCD": "cc-pVDZ", "CCT": "cc-pVTZ", "CCQ": "cc-pVQZ", "CC5": "cc-pV5Z"} | {
@@ -94,7 +102,7 @@ def gradient(text: str) -> FloatArray | None:
 def rotational_constants(text: str) -> FloatArray | None:
     """Read the last constants, printed in GHz."""
     line = last_group(r"THE ROTATIONAL CONSTANTS ARE \(IN GHZ\)\s*\n(.*)", text)
-    return np.array([number(word) / 29.9792458 for word in pattern(NUMBER).findall(line)]) if line else None
+    return np.array([number(word) / GHZ_PER_CM for word in pattern(NUMBER).findall(line)]) if line else None
 
 
 GAMESS = Program(

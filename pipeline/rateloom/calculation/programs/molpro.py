@@ -6,7 +6,7 @@ import numpy as np
 
 from rateloom.arrays import FloatArray
 from rateloom.calculation.names import usual_basis, usual_method
-from rateloom.calculation.programs.program import NUMBER, Program, last_group, last_table, number, pattern
+from rateloom.calculation.programs.program import GHZ_PER_CM, NUMBER, Program, last_group, last_table, number, pattern
 from rateloom.calculation.record import Level
 
 ENERGY = r" +(?:total )?[Ee](?:nergy|NERGY):? +"
@@ -31,7 +31,7 @@ def gradient(text: str) -> FloatArray | None:
 def rotational_constants(text: str) -> FloatArray | None:
     """Read the last constants, printed in GHz."""
     line = last_group(r"^ Rotational constants: (.*) GHz", text)
-    return np.array([number(word) / 29.9792458 for word in pattern(NUMBER).findall(line)]) if line else None
+    return np.array([number(word) / GHZ_PER_CM for word in pattern(NUMBER).findall(line)]) if line else None
 
 
 MOLPRO = Program(

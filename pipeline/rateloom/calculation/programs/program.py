@@ -7,6 +7,7 @@ from functools import lru_cache
 from typing import Any
 
 import numpy as np
+from scipy.constants import c, centi, giga
 
 from rateloom.arrays import FloatArray
 from rateloom.calculation.record import Level
@@ -14,6 +15,8 @@ from rateloom.remarks import Remark
 
 NUMBER = r"([-+]?\d*\.\d+(?:[DdEe][-+]?\d+)?)"
 """A decimal number as one group."""
+GHZ_PER_CM = c / centi / giga
+"""Frequency of one cm-1 [GHz]."""
 
 
 @dataclass(frozen=True, slots=True)

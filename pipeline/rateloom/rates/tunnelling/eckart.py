@@ -1,64 +1,117 @@
-"""The asymmetric Eckart barrier, exact in one dimension.
+"""Tunnelling through an asymmetric Eckart barrier: thermal average of its exact transmission probability.
 
-The transmission probability is written as 2 sinh(a) sinh(b) / (cosh(a + b) + cosh(d)) and as a logarithm: the usual
-difference of hyperbolic cosines cancels for thick barriers, and its terms overflow. The thermal average is integrated
-on energies that do not depend on temperature, so that one evaluation of the probability serves the whole grid.
+Energies are in units of h nu/2 pi here, nu being the magnitude of the imaginary frequency. The transmission
+probability of a barrier of heights V1 and V2 is that of two momenta a(E) and b(E) on its two sides and a constant d,
+
+    P = 1 - (cosh(b - a) + cosh d) / (cosh(a + b) + cosh d).
+
+Energies below the ground level of reactants or products do not tunnel: the average begins at the higher of them. It
+is then the same from both sides, and is worked out from the side where the barrier is lower, which has a = 0 there.
+
+The textbook form loses all digits where P is small, and its integral is hard for a fixed quadrature: a root at the
+threshold, a step at the top and a thermal maximum that wanders between them. Three changes make it easy:
+
+- by parts, the average is the integral of P'(E) exp(-(E - V)/kT), and P' is a sum of positive terms;
+- in the variable s = a + b, all poles of P' lie pi away from the path or, in shallow barriers, near its beginning;
+- with s - s0 = w ln(1 + exp t) the beginning goes to minus infinity, and the trapezoidal rule converges
+  exponentially, whatever the barrier.
 """
 
+from dataclasses import dataclass
+from math import cosh, exp, expm1, log, log1p, pi, sin, sqrt
+
 import numpy as np
-from scipy.constants import N_A, h, k, kilo, pi
+from scipy.constants import N_A, h, k, kilo
 
 from rateloom.arrays import FloatArray
 from rateloom.rates.tunnelling.model import Barrier, Tunnelling
 from rateloom.remarks import Remark
 
-NODES, WEIGHTS = np.polynomial.legendre.leggauss(16)
-ABOVE = 45.0
-"""Energies this many k T above the barrier add less than the rounding of a double."""
-EVEN_PANELS = 16
-FINEST = 13
-"""Panels at the threshold shrink to 2^-FINEST of the way, in the square root of the energy."""
+_NEGLIGIBLE = 28.0  # exp(-28) = 7e-13 of the largest part of the integrand is left out
+_STEP = 0.6  # of t; poles at a distance w from the path give an error of exp(-2 pi w/step)
+_SHALLOW_STEP = 0.4  # poles at pi/2 instead of pi
 
 
-def eckart(barrier: Barrier, temperatures: FloatArray) -> Tunnelling:
-    """Evaluate the ratio of the quantum to the classical thermal flux through an Eckart barrier.
+def eckart(barrier: Barrier, temperatures: FloatArray, /) -> Tunnelling:
+    """Give the tunnelling factors of a reaction through an Eckart barrier.
 
     Parameters
     ----------
-    barrier
-        Zero-point-corrected barriers both ways [J] and the imaginary frequency [Hz].
+    barrier : Barrier
+        Zero-point-corrected heights both ways and imaginary frequency [J, Hz].
     temperatures : ndarray, shape (n_temperatures,)
-        [K], above zero.
+        Temperatures [K], above zero.
 
     Returns
     -------
     Tunnelling
-        Logarithms of factors [1], shape (n_temperatures,). Where a barrier is not above zero there is no Eckart
-        barrier: factor 1 and the remark ``no-eckart-barrier``.
+        ln of the factors [1]; zero, with the remark ``no-eckart-barrier``, where a height is not above zero.
 
-    Notes
-    -----
-    Energies below the ground level of reactants or products do not tunnel. The result is good to 1e-9 relative for
-    barriers of 1 to 400 kJ/mol, imaginary frequencies up to 3000 cm-1 and temperatures from 100 K.
+    Raises
+    ------
+    ValueError
+        A temperature or the frequency is not above zero.
 
     References
     ----------
-    .. [1] C. Eckart, Phys. Rev. 35, 1303 (1930).
-    .. [2] H. S. Johnston, J. Heicklen, J. Phys. Chem. 66, 532 (1962).
+    .. [1] C. Eckart, Phys. Rev. 35, 1303 (1930) (from memory).
     """
-    lower = min(barrier.forward, barrier.reverse)
-    if lower <= 0.0:
-        message = (
-            "with zero-point energies the saddle is not above both reactants and products: there is no Eckart "
-            "barrier, and the tunnelling factor is 1"
-        )
-        remark = Remark("no-eckart-barrier", message, f"{lower * N_A / kilo:.2f} kJ/mol", "above 0 kJ/mol")
-        return Tunnelling(np.zeros_like(temperatures), (remark,))
-    energies, weights = _quadrature(barrier, float(temperatures.max()))
-    thermal = k * temperatures[:, np.newaxis]
-    log_terms = log_probability(barrier, energies) + (barrier.forward - energies) / thermal
-    largest = log_terms.max(axis=1, keepdims=True)
-    return Tunnelling(largest[:, 0] + np.log((np.exp(log_terms - largest) * weights / thermal).sum(axis=1)))
+    if min(barrier.forward, barrier.reverse) > 0:
+        factors = log_eckart_factor(barrier.forward, barrier.reverse, barrier.imaginary_frequency, temperatures)
+        return Tunnelling(factors)
+    lowest = min(barrier.forward, barrier.reverse) * N_A / kilo
+    side = "reactants" if barrier.forward <= barrier.reverse else "products"
+    message = (
+        f"Seen from the {side} there is no barrier with zero-point energy, and so no Eckart barrier: the tunnelling "
+        "factor is 1. Check the level of theory, or look for a complex before the saddle."
+    )
+    remark = Remark("no-eckart-barrier", message, value=f"{lowest:.2f} kJ/mol", limit="above 0 kJ/mol")
+    return Tunnelling(np.zeros(len(temperatures)), (remark,))
+
+
+def log_eckart_factor(
+    forward: float, reverse: float, imaginary_frequency: float, temperatures: FloatArray
+) -> FloatArray:
+    """Natural logarithm of the ratio of quantum to classical thermal flux through an Eckart barrier.
+
+    The relative error of the factor is below 1e-9 for barriers of 1 to 400 kJ/mol, imaginary frequencies up to
+    3000 cm-1 and temperatures from 100 K.
+
+    Parameters
+    ----------
+    forward, reverse : float
+        Heights of the barrier from both sides, per molecule [J].
+    imaginary_frequency : float
+        Magnitude of the imaginary frequency [Hz].
+    temperatures : ndarray, shape (n_temperatures,)
+        Temperatures [K].
+
+    Returns
+    -------
+    ndarray, shape (n_temperatures,)
+        ln of the factor [1].
+
+    Raises
+    ------
+    ValueError
+        A height, the frequency or a temperature is not above zero.
+
+    References
+    ----------
+    .. [1] C. Eckart, Phys. Rev. 35, 1303 (1930) (from memory).
+    .. [2] H. S. Johnston, J. Heicklen, J. Phys. Chem. 66, 532 (1962), for the notation (from memory).
+    .. [3] L. N. Trefethen, J. A. C. Weideman, SIAM Rev. 56, 385 (2014), for the quadrature (from memory).
+    """
+    if not np.all(temperatures > 0):
+        msg = f"temperatures must be above 0 K, the lowest is {np.min(temperatures):.4g} K"
+        raise ValueError(msg)
+    shape, unit = _shape(forward, reverse, imaginary_frequency)
+    betas = unit / (k * temperatures)
+    offsets, log_weights = _grid(shape, betas)
+    above_top = shape.energy(offsets) - shape.height
+    logs = (shape.log_slope(offsets) + log_weights)[np.newaxis, :] - betas[:, np.newaxis] * above_top
+    largest = logs.max(axis=1, keepdims=True)
+    return largest[:, 0] + np.log(np.exp(logs - largest).sum(axis=1))
 
 
 def log_probability(barrier: Barrier, energies: FloatArray) -> FloatArray:
@@ -66,67 +119,123 @@ def log_probability(barrier: Barrier, energies: FloatArray) -> FloatArray:
 
     Parameters
     ----------
-    barrier
-        Both barriers above zero.
-    energies : ndarray, any shape
-        Above the ground level of the reactants, and above that of the products [J].
+    barrier : Barrier
+        Heights both ways and imaginary frequency, above zero [J, Hz].
+    energies : ndarray, shape (n_energies,)
+        Energies above the ground level of the reactants [J].
 
     Returns
     -------
-    ndarray, same shape
-        ln P [1].
+    ndarray, shape (n_energies,)
+        ln P [1]; minus infinity where the energy is below the ground level of reactants or products.
+
+    Raises
+    ------
+    ValueError
+        A height or the frequency is not above zero.
 
     References
     ----------
-    .. [1] H. S. Johnston, J. Heicklen, J. Phys. Chem. 66, 532 (1962), whose 2 pi a, 2 pi b and 2 pi d
-       are a, b and d here.
+    .. [1] C. Eckart, Phys. Rev. 35, 1303 (1930) (from memory).
     """
-    quantum = h * barrier.imaginary_frequency
-    forward, reverse = 2.0 * pi * barrier.forward / quantum, 2.0 * pi * barrier.reverse / quantum
-    thickness = 2.0 / (forward**-0.5 + reverse**-0.5)
-    a = thickness * np.sqrt(2.0 * pi * energies / quantum)
-    b = thickness * np.sqrt(np.maximum(2.0 * pi * (energies - barrier.forward) / quantum + reverse, 0.0))
-    discriminant = forward * reverse - pi**2 / 4.0
-    # 2 sinh(a) sinh(b) = e^(a+b) (1 - e^-2a) (1 - e^-2b) / 2; zero at the threshold, where b = 0.
-    with np.errstate(divide="ignore"):
-        log_flux = a + b + np.log(-np.expm1(-2.0 * a)) + np.log(-np.expm1(-2.0 * b)) - np.log(2.0)
-    if discriminant >= 0.0:
-        return log_flux - np.logaddexp(_log_cosh(a + b), _log_cosh(2.0 * np.sqrt(discriminant)))
-    # cosh(s) + cos(d) = 2 (sinh(s/2)^2 + cos(d/2)^2): a sum of squares, even where both terms nearly cancel.
-    half = 0.5 * (a + b)
-    squares = (0.5 * np.expm1(-2.0 * half)) ** 2 + np.cos(np.sqrt(-discriminant)) ** 2 * np.exp(-2.0 * half)
-    return log_flux - np.log(2.0) - 2.0 * half - np.log(squares)
+    shape, unit = _shape(barrier.forward, barrier.reverse, barrier.imaginary_frequency)
+    above = np.maximum((energies - max(barrier.forward - barrier.reverse, 0.0)) / unit, 0.0)
+    a = shape.scale * np.sqrt(above)
+    b = np.hypot(a, shape.start)
+    with np.errstate(divide="ignore"):  # ln 0 at and below the threshold is meant
+        return a + b + np.log(-np.expm1(-2 * a)) + np.log(-np.expm1(-2 * b)) - shape.log_sum(a + b)
 
 
-def _log_cosh(x: FloatArray | float) -> FloatArray | float:
-    return np.logaddexp(x, np.negative(x)) - np.log(2.0)
+@dataclass(frozen=True, slots=True)
+class _Shape:
+    """An Eckart barrier in units of h nu/2 pi, seen from the side where it is lower."""
+
+    height: float
+    scale: float
+    """a = scale sqrt(E), E counted from the threshold."""
+    start: float
+    """s = a + b = b at the threshold."""
+    log_top: float
+    """ln(2 + 2 cosh d)."""
+
+    @classmethod
+    def of(cls, low: float, high: float) -> "_Shape":
+        scale = 2 / (1 / sqrt(low) + 1 / sqrt(high))
+        return cls(low, scale, scale * sqrt(high - low), _log_top(low * high))
+
+    def energy(self, offsets: FloatArray) -> FloatArray:
+        """Energy above the threshold where s = start + offset."""
+        s = self.start + offsets
+        return (offsets * (s + self.start) / (2 * s * self.scale)) ** 2
+
+    def log_sum(self, s: FloatArray) -> FloatArray:
+        """ln(2 cosh s + 2 cosh d), written as 4 sinh(s/2)^2 + (2 + 2 cosh d)."""
+        with np.errstate(divide="ignore"):  # s = 0 gives ln 0, which adds nothing
+            return np.logaddexp(s + 2 * np.log(-np.expm1(-s)), self.log_top)
+
+    def log_slope(self, offsets: FloatArray) -> FloatArray:
+        """ln dP/ds where s = start + offset."""
+        s = self.start + offsets
+        m = self.start**2 / s  # b - a
+        log_sum = self.log_sum(s)
+        with np.errstate(divide="ignore"):  # m = 0 in a symmetric barrier
+            log_change = np.log(m / s) + m + np.log(-np.expm1(-2 * m))
+        log_rest = self.log_sum(m) - log_sum + s + np.log(-np.expm1(-2 * s))
+        return np.logaddexp(log_change, log_rest) - log_sum
 
 
-def _quadrature(barrier: Barrier, hottest: float) -> tuple[FloatArray, FloatArray]:
-    """Place Gauss-Legendre panels: energies [J] and weights [J], both of shape (n_nodes,).
+def _shape(forward: float, reverse: float, imaginary_frequency: float) -> tuple[_Shape, float]:
+    """Shape of a barrier and the unit of its energies [J]."""
+    if not min(forward, reverse, imaginary_frequency) > 0:
+        given = f"{forward:.4g} J, {reverse:.4g} J and {imaginary_frequency:.4g} Hz"
+        msg = f"heights and frequency of an Eckart barrier must be above 0, not {given}"
+        raise ValueError(msg)
+    unit = h * imaginary_frequency / (2 * pi)
+    return _Shape.of(min(forward, reverse) / unit, max(forward, reverse) / unit), unit
 
-    Below the barrier the variable is the square root of the energy from the threshold, which takes away the branch
-    points there; panels shrink towards the threshold. Towards the top they shrink to h nu / 2 pi, the width over
-    which the probability goes from 0 to 1. Above the top they grow from that width to eight times k T.
+
+def _log_top(product: float) -> float:
+    """ln(2 + 2 cosh d) for d^2 = 4 (V1 V2 - pi^2/4), which may be negative."""
+    if product >= pi**2 / 4:
+        d = 2 * sqrt(product - pi**2 / 4)
+        return d + 2 * log1p(exp(-d))
+    # 2 + 2 cos|d| = 4 cos(|d|/2)^2, and the angle is near pi/2 in a shallow barrier
+    return 2 * log(2 * sin(product / (pi / 2 + sqrt(pi**2 / 4 - product))))
+
+
+def _grid(shape: _Shape, betas: FloatArray) -> tuple[FloatArray, FloatArray]:
+    """Offsets of s from its start and ln of their weights, for all temperatures together."""
+    coldest, hottest = float(betas.max()), float(betas.min())
+    width = min(1.0, shape.scale * sqrt(pi / coldest) / 2)  # half that of the coldest Boltzmann factor
+    step = _SHALLOW_STEP if shape.log_top < log(2 + 2 * cosh(pi)) else _STEP
+    first = _inverse_softplus(_lowest_offset(shape, betas) / width)
+    last = _inverse_softplus(_highest_offset(shape, hottest) / width)
+    t = np.arange(first, last + step, step)
+    return width * np.logaddexp(0.0, t), log(width * step) - np.logaddexp(0.0, -t)
+
+
+def _inverse_softplus(value: float) -> float:
+    return value + log(-expm1(-value)) if value > exp(-_NEGLIGIBLE) else -_NEGLIGIBLE
+
+
+def _lowest_offset(shape: _Shape, betas: FloatArray) -> float:
+    """Offset below which the integrand is negligible at every temperature.
+
+    Below the top the integrand is less than exp(beta (V - E) - (top - s)) and E is more than
+    (s^2 - 2 start^2)/(4 scale^2): a parabola in s, held against the value that the integrand has at its vertex.
     """
-    threshold = max(0.0, barrier.forward - barrier.reverse)
-    depth = barrier.forward - threshold
-    distances = h * barrier.imaginary_frequency / (2.0 * pi) * 2.0 ** np.arange(40)
-    near_top = np.sqrt(1.0 - distances[distances < depth] / depth)
-    even = np.linspace(0.0, 1.0, EVEN_PANELS + 1)
-    edges = np.unique(np.concatenate([even, 2.0 ** -np.arange(5.0, FINEST + 1.0), near_top]))
-    root, below = _panels(edges)
-    height = ABOVE * k * hottest
-    steps = np.linspace(0.0, height, 7)
-    above, above_weights = _panels(np.unique(np.concatenate([steps, distances[distances < height]])))
-    return (
-        np.concatenate([threshold + depth * root**2, barrier.forward + above]),
-        np.concatenate([2.0 * depth * root * below, above_weights]),
-    )
+    vertex = 2 * shape.scale**2 / betas
+    reached = np.clip(vertex, shape.start, max(shape.log_top, shape.start + 1.0))
+    value = betas * (shape.height - shape.energy(reached - shape.start)) - np.maximum(shape.log_top - reached, 0.0)
+    bound = betas * (shape.height + (shape.start / shape.scale) ** 2 / 2) - shape.log_top + vertex / 2
+    depth = np.maximum(bound - value, 0.0) + _NEGLIGIBLE
+    return max(float((vertex - 2 * shape.scale * np.sqrt(depth / betas)).min()) - shape.start, 0.0)
 
 
-def _panels(edges: FloatArray) -> tuple[FloatArray, FloatArray]:
-    """Nodes and weights of Gauss-Legendre quadrature on panels between edges, flat."""
-    middle, half = 0.5 * (edges[1:] + edges[:-1]), 0.5 * (edges[1:] - edges[:-1])
-    nodes = middle[:, np.newaxis] + half[:, np.newaxis] * NODES
-    return nodes.ravel(), (half[:, np.newaxis] * WEIGHTS).ravel()
+def _highest_offset(shape: _Shape, hottest: float) -> float:
+    """Offset above which the slope, or the Boltzmann factor of the highest temperature, is negligible."""
+    beyond_top = max(shape.log_top, 0.0) + _NEGLIGIBLE
+    beyond_start = (_NEGLIGIBLE + sqrt(_NEGLIGIBLE**2 + 4 * shape.start**2)) / 2  # where s - m is that large
+    momentum = shape.scale * sqrt(shape.height + 2 * _NEGLIGIBLE / hottest)
+    beyond_energy = momentum + sqrt(momentum**2 + shape.start**2)
+    return min(max(beyond_top, beyond_start), beyond_energy) - shape.start
