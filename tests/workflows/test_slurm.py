@@ -166,6 +166,16 @@ class Desk:
         assert done.returncode <= 1, done.stderr
         return done.returncode
 
+    def make_longer(self) -> None:
+        """Give the job more reactions, each with a file of its own, so that there is time to disturb it."""
+        lines = JOB.replace("reactions:\n", "@").split("@")
+        output = gzip.decompress((self.folder / "calculations" / "ts_h2_o.out.gz").read_bytes())
+        for i in range(60):
+            (self.folder / "calculations" / f"ts_{i}.out.gz").write_bytes(gzip.compress(output, mtime=i))
+            lines[0] += f"  ts-{i}: {{frequencies: ts_{i}.out.gz, energy: ts_h2_o_ccsdt.out.gz}}\n"
+            lines[1] += f"  again-{i}: {{equation: H2 + O <=> OH + H, transition_state: ts-{i}}}\n"
+        (self.folder / "job.yaml").write_text("reactions:\n".join(lines))
+
     def submit(self, tasks: int) -> str:
         """Hand in the batch script; gives the number of its job."""
         options = ["--parsable", f"--ntasks={tasks}", "--mem-per-cpu=1G", "--time=10", "--output=log.txt"]
@@ -173,9 +183,13 @@ class Desk:
         assert done.returncode == 0, done.stderr
         return done.stdout.strip()
 
+    def queued(self) -> str:
+        """Give the numbers of the jobs that Slurm has not ended."""
+        return self.call("squeue", "--noheader", "--format=%i").stdout.strip()
+
     def exit_code(self, number: str) -> str:
         """Wait for the end of a job; gives its exit code as Slurm writes it."""
-        assert until(lambda: not self.call("squeue", "--noheader").stdout, 240), self.log()
+        assert until(lambda: not self.queued(), 240), self.log()
         return self.call("scontrol", "show", "job", number).stdout.partition("ExitCode=")[2].split()[0]
 
     def log(self) -> str:
@@ -219,7 +233,7 @@ def test_workers_requested_from_slurm_give_the_tables_of_a_local_run(desk: Desk)
     assert desk.tables("there") == desk.tables("here")
     assert len(desk.tables("there")) >= 6
     assert not list(desk.folder.glob("rateloom-workers-*")), "the folder of logs and keys stays behind"
-    assert until(lambda: not desk.call("squeue", "--noheader").stdout, 30), "the workers stay behind"
+    assert until(lambda: not desk.queued(), 30), "the workers stay behind"
 
 
 def test_an_allocation_that_cannot_be_had_is_told_at_once(desk: Desk) -> None:
@@ -233,13 +247,7 @@ def test_an_allocation_that_cannot_be_had_is_told_at_once(desk: Desk) -> None:
 
 
 def test_an_allocation_whose_time_is_up_keeps_what_was_finished(desk: Desk) -> None:
-    lines = JOB.replace("reactions:\n", "@").split("@")
-    output = gzip.decompress((desk.folder / "calculations" / "ts_h2_o.out.gz").read_bytes())
-    for i in range(60):
-        (desk.folder / "calculations" / f"ts_{i}.out.gz").write_bytes(gzip.compress(output, mtime=i))
-        lines[0] += f"  ts-{i}: {{frequencies: ts_{i}.out.gz, energy: ts_h2_o_ccsdt.out.gz}}\n"
-        lines[1] += f"  again-{i}: {{equation: H2 + O <=> OH + H, transition_state: ts-{i}}}\n"
-    (desk.folder / "job.yaml").write_text("reactions:\n".join(lines))
+    desk.make_longer()
     number = desk.submit(tasks=1)
     assert until(lambda: "stages done" in desk.log(), 120), desk.log()
 
@@ -254,3 +262,23 @@ def test_an_allocation_whose_time_is_up_keeps_what_was_finished(desk: Desk) -> N
     assert json.loads((desk.folder / "there" / "run.json").read_text())["stages"]["read"]["reused"] > 0
     names = ["rates.csv", "arrhenius.csv", "audit.csv"]
     assert [desk.tables("there")[name] for name in names] == [desk.tables("here")[name] for name in names]
+
+
+def test_a_worker_that_slurm_takes_away_is_replaced(desk: Desk) -> None:
+    desk.make_longer()
+    script = str(SCRIPTS / "request_workers.py")
+    command = [sys.executable, script, "--jobs", "1", "--memory", "1GiB", "job.yaml", "--output", "there"]
+    with (desk.folder / "log.txt").open("w") as log:
+        running = subprocess.Popen(command, cwd=desk.folder, env=desk.environment, stdout=log, stderr=log)
+    try:
+        assert until(lambda: "stages done" in desk.log(), 120), desk.log()
+        first = desk.queued()
+        desk.call("scancel", first)
+
+        assert until(lambda: desk.queued() not in {"", first}, 120), desk.log()
+        assert running.wait(timeout=400) == WITHHELD, desk.log()
+    finally:
+        running.terminate()
+        running.wait()
+    assert desk.here("here") == WITHHELD
+    assert desk.tables("there")["rates.csv"] == desk.tables("here")["rates.csv"]

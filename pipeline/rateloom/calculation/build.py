@@ -13,7 +13,8 @@ from rateloom.calculation.motion import count_rigid, same_shape
 from rateloom.calculation.normal_modes import modes_of_hessian
 from rateloom.calculation.output import Output
 from rateloom.calculation.programs import Program
-from rateloom.calculation.programs.program import GHZ_PER_CM, last_group, number, pattern, positions
+from rateloom.calculation.programs.program import GHZ_PER_CM, last_group, number, positions
+from rateloom.calculation.programs.search import matches
 from rateloom.calculation.record import Calculation, Level
 from rateloom.calculation.track import Entry, Track
 from rateloom.errors import CalculationError
@@ -141,7 +142,7 @@ def read_atoms(here: str, program: Program, track: Track, choice: Choice) -> tup
     count = len(choice.geometry.value)
     numbers = [int(value) for value in track.last("atomnos", choice.geometry.end)]
     atoms = tuple(elements.symbol(value) for value in numbers[:count])
-    printed = [number(word) for word in pattern(program.masses).findall(here)[-count:]] if program.masses else []
+    printed = [number(match.group(1)) for match in matches(program.masses, here)][-count:] if program.masses else []
     if not printed:
         printed = track.last("atommasses", choice.chosen.end if choice.chosen else choice.geometry.end)
     if printed is not None and len(printed) == count and all(value > 0 for value in printed):

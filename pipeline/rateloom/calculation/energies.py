@@ -3,7 +3,8 @@
 from bisect import bisect_right
 
 from rateloom.calculation.output import Output
-from rateloom.calculation.programs.program import PrintedEnergy, Program, number, pattern
+from rateloom.calculation.programs.program import PrintedEnergy, Program, number
+from rateloom.calculation.programs.search import matches
 from rateloom.calculation.track import Track
 
 RANKING = (
@@ -26,7 +27,7 @@ def printed_energies(output: Output, program: Program, track: Track) -> list[Pri
         found = [
             PrintedEnergy(kind, match.start(1), number(match.group(1)))
             for kind, expression in program.energies
-            for match in pattern(expression).finditer(output.text)
+            for match in matches(expression, output.text)
         ]
     else:
         found = cclib_energies(output, track)

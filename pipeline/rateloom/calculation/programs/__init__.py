@@ -18,10 +18,11 @@ PROGRAMS: tuple[Program, ...] = (NWCHEM, PSI4, ORCA, GAUSSIAN, QCHEM, MOLPRO, GA
 
 def recognise(text: str) -> Program | None:
     """Tell the program by the first heading in a text; outputs quote the names of others further down."""
-    found = [
-        (place, order)
-        for order, program in enumerate(PROGRAMS)
-        for phrase in program.phrases
-        if (place := text.find(phrase)) >= 0
-    ]
-    return PROGRAMS[min(found)[1]] if found else None
+    first, found = len(text), None
+    for program in PROGRAMS:
+        for phrase in program.phrases:
+            # What stands further down than the first heading so far need not be searched.
+            place = text.find(phrase, 0, first + len(phrase) - 1)
+            if place >= 0:
+                first, found = place, program
+    return found

@@ -13,8 +13,8 @@ from rateloom.calculation.programs.program import (
     Program,
     last_group,
     number,
-    pattern,
 )
+from rateloom.calculation.programs.search import matches, pattern
 from rateloom.calculation.record import Level
 
 BASIS_NAMES = {"CCD": "cc-pVDZ", "CCT": "cc-pVTZ", "CCQ": "cc-pVQZ", "CC5": "cc-pV5Z"} | {
@@ -37,9 +37,9 @@ def energies(text: str) -> list[PrintedEnergy]:
     found = [
         PrintedEnergy(kind, match.start(1), number(match.group(1)))
         for kind, expression in LINES
-        for match in pattern(expression).finditer(text)
+        for match in matches(expression, text)
     ]
-    finals = pattern(r"^ FINAL (?:(\S+) )?ENERGY IS\s+" + NUMBER).finditer(text)
+    finals = matches(r"^ FINAL (?:(\S+) )?ENERGY IS\s+" + NUMBER, text)
     return found + [PrintedEnergy(kind_of(m.group(1) or "", text), m.start(2), number(m.group(2))) for m in finals]
 
 
@@ -86,7 +86,7 @@ def basis(text: str) -> str:
 def displaced(text: str) -> list[tuple[int, int]]:
     """Find the displaced geometries of a numerical Hessian."""
     spans: list[tuple[int, int]] = []
-    for match in pattern(r"^\s*COORD +[1-9]\d* +NUCLEAR COORDINATES").finditer(text):
+    for match in matches(r"^\s*COORD +[1-9]\d* +NUCLEAR COORDINATES", text):
         if not spans or match.start() >= spans[-1][1]:
             end = text.find("NORMAL COORDINATE ANALYSIS", match.start())
             spans.append((match.start(), end if end >= 0 else len(text)))

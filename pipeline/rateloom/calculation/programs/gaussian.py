@@ -12,8 +12,8 @@ from rateloom.calculation.programs.program import (
     last_group,
     last_table,
     number,
-    pattern,
 )
+from rateloom.calculation.programs.search import matches
 from rateloom.calculation.record import Level
 from rateloom.remarks import Remark
 
@@ -42,14 +42,14 @@ def energies(text: str) -> list[PrintedEnergy]:
     found = [
         PrintedEnergy(kind, match.start(1), number(match.group(1)))
         for kind, expression in LINES
-        for match in pattern(expression).finditer(text)
+        for match in matches(expression, text)
     ]
-    for match in pattern(r"^ SCF Done:\s+E\(([^)]*)\)\s*=\s*" + NUMBER).finditer(text):
+    for match in matches(r"^ SCF Done:\s+E\(([^)]*)\)\s*=\s*" + NUMBER, text):
         name = reference(match.group(1))
         kind = "semiempirical" if name.upper() in SEMIEMPIRICAL else "SCF" if name == "HF" else "DFT"
         found.append(PrintedEnergy(kind, match.start(2), number(match.group(2))))
-    routes = [(match.end(), match.group(1)) for match in pattern(ROUTE).finditer(text)]
-    for match in pattern(r"E\((?:CORR|Corr)\)=\s*" + NUMBER).finditer(text):
+    routes = [(match.end(), match.group(1)) for match in matches(ROUTE, text)]
+    for match in matches(r"E\((?:CORR|Corr)\)=\s*" + NUMBER, text):
         route = next((words for end, words in reversed(routes) if end < match.start()), "").upper()
         kind = next((kind for word, kind in AMPLITUDES if word in route), "CCSD")
         found.append(PrintedEnergy(kind, match.start(1), number(match.group(1))))
@@ -88,8 +88,8 @@ def gradient(text: str) -> FloatArray | None:
 def ends_of_search(text: str) -> list[tuple[int, bool]]:
     """Find the ends of optimisations; a frequency job, of two steps at most, finds its point stationary too."""
     found: list[tuple[int, bool]] = []
-    steps = list(pattern(r"maximum allowed number of steps= *(\d+)\.").finditer(text))
-    for match in pattern(r"^ +-- (Stationary point found|Number of steps exceeded)").finditer(text):
+    steps = list(matches(r"maximum allowed number of steps= *(\d+)\.", text))
+    for match in matches(r"^ +-- (Stationary point found|Number of steps exceeded)", text):
         allowed = next((int(step.group(1)) for step in reversed(steps) if step.start() < match.start()), 0)
         if allowed > STEPS_OF_FREQUENCIES:
             found.append((match.start(), match.group(1).startswith("Stationary")))

@@ -6,7 +6,8 @@ import numpy as np
 
 from rateloom.arrays import FloatArray
 from rateloom.calculation.names import usual_basis, usual_method
-from rateloom.calculation.programs.program import GHZ_PER_CM, NUMBER, Program, last_group, last_table, number, pattern
+from rateloom.calculation.programs.program import GHZ_PER_CM, NUMBER, Program, last_group, last_table, number
+from rateloom.calculation.programs.search import pattern
 from rateloom.calculation.record import Level
 
 ENERGY = r" +(?:total )?[Ee](?:nergy|NERGY):? +"

@@ -7,7 +7,8 @@ import numpy as np
 
 from rateloom.arrays import FloatArray
 from rateloom.calculation.names import usual_basis, usual_method
-from rateloom.calculation.programs.program import NUMBER, Program, last_group, last_table, number, pattern
+from rateloom.calculation.programs.program import NUMBER, Program, last_group, last_table, number
+from rateloom.calculation.programs.search import matches, pattern
 from rateloom.calculation.record import Level
 
 COMPONENTS = {
@@ -79,7 +80,7 @@ def short(shares: dict[str, float]) -> dict[str, float]:
 def basis(text: str) -> str:
     """Read the names in the last summary of the basis set, one where all elements share it."""
     names: list[str] = []
-    for match in pattern(r'^ Summary of "ao basis" -> .*\n.*\n.*\n.*\n((?:.*\S.*\n)+)').finditer(text):
+    for match in matches(r'^ Summary of "ao basis" -> .*\n.*\n.*\n.*\n((?:.*\S.*\n)+)', text):
         names = [word[1] for line in match.group(1).splitlines() if len(word := line.split()) > 1]
     return "+".join(dict.fromkeys(usual_basis(name) for name in names))
 
@@ -87,9 +88,9 @@ def basis(text: str) -> str:
 def multiplicity(text: str) -> int | None:
     """Read the last multiplicity, or the numbers of electrons in the place of it."""
     last = None
-    word = r"Spin multiplicity *: *(\d+)"
+    word = r"^ *Spin multiplicity *: *(\d+)"
     electrons = r"^ *alpha electrons *= *(\d+)\n *beta  ?electrons *= *(\d+)"
-    for match in pattern(rf"{word}|{electrons}|^ *open shells *= *(\d+)").finditer(text):
+    for match in matches(rf"{word}|{electrons}|^ *open shells *= *(\d+)", text):
         direct, alpha, beta, shells = match.groups()
         last = int(direct) if direct else int(shells) + 1 if shells else int(alpha) - int(beta) + 1
     return last

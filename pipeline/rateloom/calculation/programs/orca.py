@@ -14,8 +14,9 @@ from rateloom.calculation.programs.program import (
     last_group,
     last_table,
     number,
-    pattern,
+    positions,
 )
+from rateloom.calculation.programs.search import matches, pattern
 from rateloom.calculation.record import Level
 
 LINES = (
@@ -41,16 +42,17 @@ def energies(text: str) -> list[PrintedEnergy]:
     found = [
         PrintedEnergy(kind, match.start(1), number(match.group(1)))
         for kind, expression in (*LINES, (scf, r"^Total Energy\s*:\s*" + NUMBER + " Eh"))
-        for match in pattern(expression).finditer(text)
+        for match in matches(expression, text)
     ]
     start = 0
     finals = []
-    for match in pattern(r"^FINAL SINGLE POINT ENERGY(?: \([^)]*\))?\s+" + NUMBER).finditer(text):
+    excited = positions(EXCITED, text)
+    for match in matches(r"^FINAL SINGLE POINT ENERGY(?: \([^)]*\))?\s+" + NUMBER, text):
         parts = {energy.kind for energy in found if start <= energy.position < match.start()}
         kind = next((name for name in CONTRIBUTIONS if name in parts), scf)
         if kind == "MP2" and scf == "DFT":
             kind = "double-hybrid DFT"
-        if not pattern(EXCITED).search(text, start, match.start()):
+        if not any(start <= place < match.start() for place in excited):
             finals.append(PrintedEnergy(kind, match.start(1), number(match.group(1))))
         start = match.end()
     if scf == "DFT":
@@ -61,12 +63,12 @@ def energies(text: str) -> list[PrintedEnergy]:
 
 def input_words(text: str) -> list[str]:
     """Give the words of the simple input lines."""
-    return [word for line in pattern(r"^\|\s*\d+> *!(.*)$").findall(text) for word in line.split()]
+    return [word for match in matches(r"^\|\s*\d+> *!(.*)$", text) for word in match.group(1).split()]
 
 
 def runs_functional(text: str) -> bool:
     """Tell whether the self-consistent energy is that of a functional, also where little is printed."""
-    if pattern(r"^ ?Density Functional +Method +\.+ DFT|^ *Exchange Functional ").search(text):
+    if positions(r"^ ?Density Functional +Method +\.+ DFT|^ *Exchange Functional ", text):
         return True
     return any(usual_method(word) in FUNCTIONALS and usual_method(word) != "HF" for word in input_words(text))
 

@@ -1,15 +1,14 @@
 """What reading needs to know of one program: how to recognise its output, and where it prints results."""
 
-import re
 from collections.abc import Callable
 from dataclasses import dataclass
-from functools import lru_cache
 from typing import Any
 
 import numpy as np
 from scipy.constants import c, centi, giga
 
 from rateloom.arrays import FloatArray
+from rateloom.calculation.programs.search import matches
 from rateloom.calculation.record import Level
 from rateloom.remarks import Remark
 
@@ -94,28 +93,22 @@ class Program:
     """What to do where the output holds no geometry."""
 
 
-@lru_cache(maxsize=512)
-def pattern(expression: str) -> re.Pattern[str]:
-    """Compile an expression of a program's table."""
-    return re.compile(expression, re.MULTILINE)
-
-
 def positions(expression: str, text: str) -> list[int]:
     """Positions at which an expression matches; none for an empty expression."""
-    return [match.start() for match in pattern(expression).finditer(text)] if expression else []
+    return [match.start() for match in matches(expression, text)] if expression else []
 
 
 def last_group(expression: str, text: str) -> str:
     """First group of the last match, empty where there is none."""
     group = ""
-    for match in pattern(expression).finditer(text):
+    for match in matches(expression, text):
         group = match.group(1)
     return group
 
 
 def first_group(expression: str, text: str) -> str:
     """First group of the first match, empty where there is none."""
-    match = pattern(expression).search(text)
+    match = next(matches(expression, text), None)
     return match.group(1) if match else ""
 
 

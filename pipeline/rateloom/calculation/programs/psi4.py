@@ -6,7 +6,8 @@ import numpy as np
 
 from rateloom.arrays import FloatArray
 from rateloom.calculation.names import usual_basis, usual_method
-from rateloom.calculation.programs.program import NUMBER, Program, last_group, last_table, number, pattern
+from rateloom.calculation.programs.program import NUMBER, Program, last_group, last_table, number
+from rateloom.calculation.programs.search import matches, pattern
 from rateloom.calculation.record import Level
 
 
@@ -39,7 +40,7 @@ def rotational_constants(text: str) -> FloatArray | None:
 def displaced(text: str) -> list[tuple[int, int]]:
     """Find the displaced calculations; the reference is the first of them, in versions before 1.1 the last."""
     spans: list[tuple[int, int]] = []
-    found = list(pattern(r"Loading displacement +(\d+) +of +(\d+)").finditer(text))
+    found = list(matches(r"Loading displacement +(\d+) +of +(\d+)", text))
     for index, match in enumerate(found):
         step, count = int(match.group(1)), int(match.group(2))
         reference = 1 if "Number of geometries (including reference)" in text[: match.start()] else count

@@ -4,7 +4,8 @@ from bisect import bisect_right
 from typing import Any
 
 from rateloom.calculation.names import usual_basis, usual_dispersion, usual_method
-from rateloom.calculation.programs.program import NUMBER, PrintedEnergy, Program, number, pattern
+from rateloom.calculation.programs.program import NUMBER, PrintedEnergy, Program, number
+from rateloom.calculation.programs.search import matches, pattern
 from rateloom.calculation.record import Level
 
 WAVE_FUNCTIONS = ("HF", "MP2", "RIMP2", "MP3", "MP4", "CCD", "CCSD", "CCSD(T)", "QCISD", "QCISD(T)", "CIS", "ADC(2)")
@@ -46,11 +47,11 @@ def energies(text: str) -> list[PrintedEnergy]:
     found = [
         PrintedEnergy(kind, match.start(1), number(match.group(1)))
         for kind, expression in LINES
-        for match in pattern(expression).finditer(text)
+        for match in matches(expression, text)
     ]
-    inputs = [match.start() for match in pattern(r"^ *\$(?:rem|REM)").finditer(text)]
+    inputs = [match.start() for match in matches(r"^ *\$(?:rem|REM)", text)]
     waves = [is_wave_function(settings(text[start : start + REM_LENGTH])) for start in inputs]
-    for match in pattern(r"^ *Total energy in the final basis set *= *" + NUMBER).finditer(text):
+    for match in matches(r"^ *Total energy in the final basis set *= *" + NUMBER, text):
         wave = waves[before - 1] if (before := bisect_right(inputs, match.start())) else True
         found.append(PrintedEnergy("SCF" if wave else "DFT", match.start(1), number(match.group(1))))
     return found
@@ -65,9 +66,10 @@ def is_wave_function(given: dict[str, str]) -> bool:
 def displaced(text: str) -> list[tuple[int, int]]:
     """Find numerical differentiations: in a frequency job all from the second geometry on."""
     spans: list[tuple[int, int]] = []
-    starts = [match.start() for match in pattern(BEGINS).finditer(text)] or [0]
+    starts = [match.start() for match in matches(BEGINS, text)] or [0]
+    orientations = [match.start() for match in matches(ORIENTATION, text)]
     for start, end in zip(starts, [*starts[1:], len(text)], strict=True):
-        geometries = [match.start() for match in pattern(ORIENTATION).finditer(text, start, end)]
+        geometries = [place for place in orientations if start <= place < end]
         if len(geometries) > 1:
             given = settings(text[start : geometries[0]])
             if given.get("jobtype", given.get("job_type", "")).startswith("freq"):
