@@ -96,7 +96,7 @@ def test_a_mode_along_the_reaction_is_confirmed(name: str) -> None:
 
     assert verdict.verdict == "confirmed"
     assert verdict.share > 0.8
-    assert verdict.remarks == ()
+    assert [remark.code for remark in verdict.remarks] == ["imaginary-mode-confirmed"]
 
 
 @settings(max_examples=60, deadline=None, suppress_health_check=[HealthCheck.too_slow])
@@ -235,7 +235,10 @@ def test_a_soft_mode_is_never_an_error() -> None:
         soft, displacements=np.array([[[0, 0, 0]] + [np.cross([1, 0, 0], h) for h in METHYL] + [[0] * 3] * 3])
     )
 
-    assert _codes(judge_saddle(soft, reactants, products)) == ("confirmed", ["small-imaginary-mode"])
+    assert _codes(judge_saddle(soft, reactants, products)) == (
+        "confirmed",
+        ["small-imaginary-mode", "imaginary-mode-confirmed"],
+    )
     assert _codes(judge_saddle(spin, reactants, products)) == (
         "inconclusive",
         ["small-imaginary-mode", "imaginary-mode-inconclusive"],
@@ -252,8 +255,8 @@ def test_an_unusual_magnitude_is_noted(frequency: float) -> None:
 
     verdict = judge_saddle(replace(saddle, frequencies_per_cm=np.array([frequency])), reactants, products)
 
-    assert _codes(verdict) == ("confirmed", ["imaginary-mode-unusual"])
-    assert verdict.remarks[0].value == f"{-frequency:.0f}i cm-1"
+    assert _codes(verdict) == ("confirmed", ["imaginary-mode-confirmed", "imaginary-mode-unusual"])
+    assert verdict.remarks[1].value == f"{-frequency:.0f}i cm-1"
 
 
 def _codes(verdict: SaddleVerdict) -> tuple[str, list[str]]:

@@ -70,6 +70,7 @@ _NOTES = (
     "charge-not-printed",
     "fine-structure-available",
     "frequencies-from-hessian",
+    "imaginary-mode-confirmed",
     "imaginary-mode-unusual",
     "isotopes-from-output",
     "large-tunnelling-factor",

@@ -14,7 +14,7 @@ from rateloom.arrays import FloatArray
 from rateloom.audit.limits import Limits
 from rateloom.audit.saddle_evidence import Evidence, bond_evidence, shape_evidence, unread_evidence
 from rateloom.audit.saddle_mode import ImaginaryMode, imaginary_mode, lowest_frequency
-from rateloom.audit.saddle_remarks import inconclusive, mode_not_printed, off_reaction, small, unusual
+from rateloom.audit.saddle_remarks import confirmed, inconclusive, mode_not_printed, off_reaction, small, unusual
 from rateloom.audit.saddle_words import expected_bonds, expected_kinds, expected_shape
 from rateloom.calculation import Calculation
 from rateloom.molecule import (
@@ -145,8 +145,9 @@ def _verdict(expected: _Expected, frequency: float | None, limits: Limits, usual
         elif evidence.verdict == "inconclusive":
             missing = evidence.missing
             remarks.append(inconclusive(frequency, evidence.moved, expected.words, missing, evidence.share))
-        elif not soft:
-            remarks += unusual(frequency, usual_row)
+        else:
+            remarks.append(confirmed(frequency, expected.kind, expected.words, evidence.moved, evidence.share))
+            remarks += [] if soft else unusual(frequency, usual_row)
     return SaddleVerdict(
         verdict=evidence.verdict,
         kind=expected.kind,

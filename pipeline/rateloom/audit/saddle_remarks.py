@@ -27,6 +27,17 @@ def mode_not_printed(frequency_per_cm: float, expected: str) -> Remark:
     )
 
 
+def confirmed(frequency_per_cm: float, kind: str, expected: str, moved: str, share: float) -> Remark:
+    """Show the evidence for a mode that belongs to the reaction."""
+    return Remark(
+        "imaginary-mode-confirmed",
+        f"the imaginary mode ({imaginary(frequency_per_cm)}) leads to the reactants one way and to the products the "
+        f"other ({kind}): it moves {moved}; expected {expected}",
+        value=f"share {share:.2f}",
+        limit=expected,
+    )
+
+
 def off_reaction(frequency_per_cm: float, moved: str, expected: str, share: float) -> Remark:
     """Say that the mode is another motion."""
     return Remark(

@@ -27,10 +27,12 @@ class Unpacker(Protocol):
 
 
 GZIP_WITH_HEADER = 31
+LOOKS_BACK = 200_000_000
+"""Memory that xz may ask for [bytes]; its strongest setting takes a third of that, a forged header asks for 4 GB."""
 COMPRESSIONS: tuple[tuple[bytes, str, Callable[[], Unpacker]], ...] = (
     (b"\x1f\x8b", "gzip", partial(zlib.decompressobj, GZIP_WITH_HEADER)),
     (b"BZh", "bzip2", bz2.BZ2Decompressor),
-    (b"\xfd7zXZ\x00", "xz", lzma.LZMADecompressor),
+    (b"\xfd7zXZ\x00", "xz", partial(lzma.LZMADecompressor, memlimit=LOOKS_BACK)),
 )
 BROKEN = (OSError, EOFError, ValueError, zlib.error, lzma.LZMAError)
 MOST_LAYERS = 3

@@ -13,7 +13,10 @@ LARGEST = 1_000_000_000
 LONGEST_LINE = 1_000_000
 """No program prints a longer line [bytes]; patterns tried on one take for ever."""
 WIDE_TEXT = (b"\xff\xfe", b"\xfe\xff")
-CONTROL_CHARACTERS = dict.fromkeys((*range(9), *range(11, 32), 133, 8232, 8233), " ")
+CONTROL_CHARACTERS = bytes(ord(" ") if code < ord(" ") and code not in b"\t\n" else code for code in range(256))
+"""Other control characters (form feeds of old programs) become spaces."""
+SEPARATORS = "\x85\u2028\u2029"
+"""What else some count as line ends, and no program does."""
 BINARY = 0.01
 """Share of zero bytes above which a file is no text; some programs print a few of them."""
 
@@ -84,7 +87,6 @@ def open_output(name: str, data: bytes, largest: int | None = LARGEST) -> Output
     data = decompress(name, data, largest)
     text = decode(name, data)
     refuse_endless_line(name, data)
-    text = normal_lines(text)
     if not text.strip():
         msg = f"{name}: the file is empty. Run the calculation again or correct the path."
         raise CalculationError(msg)
@@ -115,25 +117,23 @@ def refuse_endless_line(name: str, data: bytes) -> None:
 
 
 def decode(name: str, data: bytes) -> str:
-    """Turn bytes into text; programs print UTF-8 or, in names and units, Latin-1."""
+    """Turn bytes into text with line feeds alone; programs print UTF-8 or, in names and units, Latin-1."""
     if data.startswith(WIDE_TEXT):
-        return data.decode("utf-16", errors="replace")
+        data = data.decode("utf-16", errors="replace").encode()
     if data.count(b"\x00") > BINARY * len(data):
         msg = (
             f"{name}: this is a binary file, not the text output of a program. "
             "Name the text output (a checkpoint or wave function file cannot be read)."
         )
         raise CalculationError(msg)
+    data = data.replace(b"\r\n", b"\n").replace(b"\r", b"\n").translate(CONTROL_CHARACTERS)
     try:
-        return data.decode("utf-8-sig")
+        text = data.decode("utf-8-sig")
     except UnicodeDecodeError:
-        return data.decode("latin-1")
-
-
-def normal_lines(text: str) -> str:
-    """Write every line end as a line feed; other control characters (form feeds of old programs) become spaces."""
-    text = text.replace("\r\n", "\n").replace("\r", "\n")
-    return text.translate(CONTROL_CHARACTERS)
+        text = data.decode("latin-1")
+    for separator in SEPARATORS:
+        text = text.replace(separator, " ")
+    return text
 
 
 def split(text: str) -> list[str]:

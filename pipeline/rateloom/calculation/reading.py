@@ -6,7 +6,9 @@ from rateloom.calculation.record import Calculation
 from rateloom.errors import CalculationError
 
 
-def read_calculation(path: str, data: bytes | None = None, largest: int | None = LARGEST) -> Calculation:
+def read_calculation(
+    path: str, data: bytes | None = None, largest: int | None = LARGEST, *, sieve: bool = True
+) -> Calculation:
     """Read one output file of a quantum-chemistry program.
 
     Parameters
@@ -17,6 +19,8 @@ def read_calculation(path: str, data: bytes | None = None, largest: int | None =
         Content of the file where the caller has read it already.
     largest : int, optional
         How many bytes it may unpack to; None sets no limit.
+    sieve : bool, optional
+        Whether lines at which nothing needed begins are kept from cclib, which takes time and changes no record.
 
     Returns
     -------
@@ -36,11 +40,12 @@ def read_calculation(path: str, data: bytes | None = None, largest: int | None =
         raise unknown(output)
     # cclib takes a second to load: commands that read no file shall not wait for it.
     from rateloom.calculation.build import build
+    from rateloom.calculation.sieve import sieve_of
     from rateloom.calculation.track import follow
 
     mend = program.mend
     lines = output.lines() if mend is None else [mend(line) for line in output.lines()]
-    track = follow(output, program, enumerate(lines, start=1))
+    track = follow(output, program, enumerate(lines, start=1), sieve_of(program) if sieve else None)
     try:
         return build(output, program, track)
     except (ArithmeticError, AttributeError, LookupError, TypeError, ValueError) as error:

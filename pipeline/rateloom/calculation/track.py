@@ -21,6 +21,7 @@ from cclib.parser.logfilewrapper import FileWrapper
 
 from rateloom.calculation.output import Output
 from rateloom.calculation.programs.program import Program
+from rateloom.calculation.sieve import Sieve
 from rateloom.errors import CalculationError
 
 GROWING = ("atomcoords", "inputcoords", "scfenergies", "mpenergies", "ccenergies")
@@ -67,10 +68,17 @@ class Watch:
     def __init__(self, track: Track) -> None:
         self.track = track
         self.seen: dict[str, tuple[Any, int]] = {}
+        self.present: tuple[str, ...] = ()
+        self.signature: tuple[int, str] = (0, "")
 
     def note(self, found: dict[str, Any], begin: int, end: int) -> None:
         """Compare with the line before; both lines counted from 1."""
-        for name in WATCHED:
+        # A new attribute is the last of its dictionary; most lines bring none.
+        signature = len(found), next(reversed(found))
+        if signature != self.signature:
+            self.signature = signature
+            self.present = tuple(name for name in WATCHED if name in found)
+        for name in self.present:
             value = found.get(name)
             if value is None:
                 continue
@@ -119,8 +127,8 @@ class Lines(FileWrapper):
         """Do nothing: the lines are read once, from the first."""
 
 
-def follow(output: Output, program: Program, lines: Iterable[tuple[int, str]]) -> Track:
-    """Run a program's reader over numbered lines of its output.
+def follow(output: Output, program: Program, lines: Iterable[tuple[int, str]], idle: Sieve | None = None) -> Track:
+    """Run a program's reader over numbered lines of its output, those apart that a sieve calls idle.
 
     Raises
     ------
@@ -142,6 +150,8 @@ def follow(output: Output, program: Program, lines: Iterable[tuple[int, str]]) -
         parser.before_parsing()
         track.metadata = parser.metadata
         for line in source:
+            if idle and idle(line):
+                continue
             begin = source.number
             try:
                 parser.extract(source, line)

@@ -215,7 +215,7 @@ class Store:
                 self.mend()
                 self._write_once(statement, rows, also)
         except (*SQLITE_ERRORS, OSError) as error:
-            msg = f"{self._path} cannot be written: {error}. Free some space or mend the folder's rights and run again."
+            msg = f"{self._path} cannot be written: {error}. Free some space or mend the rights, then run again."
             raise StoreError(msg) from error
 
     def _write_once(self, statement: str, rows: list[tuple[object, ...]], also: Iterable[ResultRow]) -> None:

@@ -39,7 +39,7 @@ STAGES: MappingProxyType[str, Stage] = MappingProxyType(
             Stage("given", 1, given.take, Given, given.VALUE),
             Stage("species", 1, species.make, SpeciesRequest, species.VALUE),
             Stage("check-calculations", 1, check_calculations.check, CalculationsCheck, check_calculations.VALUE),
-            Stage("check-saddle", 1, check_saddle.check, SaddleCheck, check_saddle.VALUE),
+            Stage("check-saddle", 2, check_saddle.check, SaddleCheck, check_saddle.VALUE),
             Stage("check-reaction", 1, check_reaction.check, ReactionCheck, check_reaction.VALUE),
             Stage("check-job", 1, check_job.check, JobCheck, check_job.VALUE),
             Stage("partition", 1, partition.tabulate, Grid, partition.VALUE),

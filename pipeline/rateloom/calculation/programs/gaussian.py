@@ -118,6 +118,7 @@ GAUSSIAN = Program(
     fails=r"^ Error termination",
     level=level,
     special_energies=energies,
+    idle_rows=(r"\s*\d+\s+(?:\d+\s+[A-Z][a-z]?\s+)?\d+[A-Z]{1,4}\s",),
     masses=r"has atomic number +\d+ and mass +" + NUMBER,
     ends_of_search=ends_of_search,
     spin_squared=r"S\*\*2 before annihilation\s+" + NUMBER,

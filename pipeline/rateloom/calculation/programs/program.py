@@ -65,6 +65,10 @@ class Program:
     special_energies: EnergyReader | None = None
     mend: Callable[[str], str] | None = None
     """Corrects one line before cclib sees it; the number of lines stays."""
+    idle_rows: tuple[str, ...] = ()
+    """Labels of rows of numbers in tables, at the beginning of a line, at which nothing begins that cclib must read."""
+    idle_headings: tuple[str, ...] = ()
+    """Beginnings of lines that head what cclib would read and no record needs."""
     masses: str = ""
     """Mass of one atom as one group, where cclib reads none [u]."""
     ends_of_search: SearchReader | None = None
