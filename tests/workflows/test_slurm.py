@@ -19,7 +19,7 @@ ROOT = Path(__file__).resolve().parents[2]
 SCRIPTS = ROOT / "workflows" / "slurm"
 PROGRAMS = ("munged", "slurmctld", "slurmd", "sbatch", "srun", "scancel", "openssl")
 
-pytestmark = [pytest.mark.long, pytest.mark.timeout(600)]
+pytestmark = [pytest.mark.long, pytest.mark.timeout(1200)]
 
 JOB = """\
 title: Hydrogen
@@ -249,7 +249,7 @@ def test_an_allocation_that_cannot_be_had_is_told_at_once(desk: Desk) -> None:
 def test_an_allocation_whose_time_is_up_keeps_what_was_finished(desk: Desk) -> None:
     desk.make_longer()
     number = desk.submit(tasks=1)
-    assert until(lambda: "stages done" in desk.log(), 120), desk.log()
+    assert until(lambda: "stages done" in desk.log(), 300), desk.log()
 
     desk.call("scancel", "--signal=INT", "--batch", number)  # what Slurm sends a minute before the time is up
 
@@ -271,7 +271,7 @@ def test_a_worker_that_slurm_takes_away_is_replaced(desk: Desk) -> None:
     with (desk.folder / "log.txt").open("w") as log:
         running = subprocess.Popen(command, cwd=desk.folder, env=desk.environment, stdout=log, stderr=log)
     try:
-        assert until(lambda: "stages done" in desk.log(), 120), desk.log()
+        assert until(lambda: "stages done" in desk.log(), 300), desk.log()
         first = desk.queued()
         desk.call("scancel", first)
 

@@ -50,9 +50,9 @@ leave() {
     local status=$?
     trap - EXIT
     trap '' INT TERM
+    rm -f "$folder/key.pem" "$folder/certificate.pem" "$folder/scheduler.json"
     end "$workers"
     end "$scheduler"
-    rm -f "$folder/key.pem" "$folder/certificate.pem" "$folder/scheduler.json"
     if [ "$status" -le 1 ]; then
         rm -rf "$folder"
     else

@@ -8,6 +8,7 @@ Workers that reach their time limit are replaced. The exit status is that of rat
 
 import argparse
 import contextlib
+import logging
 import os
 import shutil
 import signal
@@ -60,6 +61,7 @@ def scheduler(args: argparse.Namespace, logs: Path) -> Any:
     from dask_jobqueue import SLURMCluster  # after encrypt(): the configuration is read once
     from distributed import Security
 
+    logging.getLogger("distributed.scheduler").setLevel(logging.CRITICAL)  # rateloom tells what became of its stages
     options = {"port": 0, "dashboard": False, "dashboard_address": "127.0.0.1:0", "interface": args.interface}
     last = 60 * args.minutes
     memory = parse_bytes(args.memory)
