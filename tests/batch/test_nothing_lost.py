@@ -7,7 +7,6 @@ import json
 import os
 import random
 import re
-import resource
 import shutil
 import signal
 import sqlite3
@@ -599,16 +598,21 @@ def test_a_file_too_large_for_the_memory_is_withheld_by_name(batch: Batch, monke
     assert batch.tables() == right
 
 
+HAS_LITTLE_MEMORY = """
+import resource, sys
+from rateloom.cli import main
+resource.setrlimit(resource.RLIMIT_AS, (1_400_000_000, 1_400_000_000))
+sys.exit(main(sys.argv[1:]))
+"""
+
+
 @pytest.mark.long
 def test_a_worker_that_may_use_little_memory_gives_up_a_huge_file_alone(batch: Batch) -> None:
     (batch.output / STORE).unlink()
     block = gzip.compress(b" spin spin spin\n" * 1_000_000, compresslevel=1)
     batch.file("ts_ch4_h.out.gz").write_bytes(block * 60)  # unpacks to 960 MB
 
-    def little() -> None:
-        resource.setrlimit(resource.RLIMIT_AS, (1_400_000_000,) * 2)
-
-    ended = end_of(batch.start("--workers", "2", preexec_fn=little))
+    ended = end_of(batch.start("--workers", "2", program=("-c", HAS_LITTLE_MEMORY)))
 
     assert_withheld(ended, batch, "Out of memory")
 

@@ -34,6 +34,6 @@ def test_the_audit_costs_less_than_a_tenth_of_reading(tmp_path: Path) -> None:
 
     reading = spent["read"]
     reactions = len(job.reactions)
-    print(f"\n{reactions} reactions, {len(files)} files: reading {reading:.2f} s, audit {audit:.2f} s of one processor")
+    print(f"\n{reactions} reactions, {len(files)} files: reading {reading:.2f} s, audit {audit:.2f} s of one core")
     print(f"audit / reading = {audit / reading:.3f} ({1e3 * audit / reactions:.1f} ms a reaction)")
     assert audit < 0.1 * reading

@@ -43,7 +43,8 @@ def test_memory_stays_near_the_limit_however_much_is_packed(compress: Compress) 
     finally:
         tracemalloc.stop()
 
-    assert peak < 5_000_000  # what is unpacked, once more while it is joined, and the packed data
+    # What is unpacked, once more while it is joined, and the 8 MB that xz looks back.
+    assert peak < 15_000_000
 
 
 @COMPRESSIONS

@@ -71,7 +71,7 @@ def test_description_tells_what_a_chemist_asks_first(read: Callable[[str], Calcu
 
 
 def test_show_prints_json_of_one_file_as_an_object(capsys: pytest.CaptureFixture[str]) -> None:
-    assert show.run(argparse.Namespace(files=[str(OUTPUTS / SADDLE)], json=True)) == 0
+    assert show.run(argparse.Namespace(files=[str(OUTPUTS / SADDLE)], json=True, largest_file=10)) == 0
 
     assert json.loads(capsys.readouterr().out)["multiplicity"] == 2
 
@@ -79,7 +79,7 @@ def test_show_prints_json_of_one_file_as_an_object(capsys: pytest.CaptureFixture
 def test_show_goes_on_after_a_file_it_cannot_read(capsys: pytest.CaptureFixture[str], tmp_path: Path) -> None:
     missing = str(tmp_path / "absent.out")
 
-    assert show.run(argparse.Namespace(files=[missing, str(OUTPUTS / SADDLE)], json=False)) == 2
+    assert show.run(argparse.Namespace(files=[missing, str(OUTPUTS / SADDLE)], json=False, largest_file=10)) == 2
 
     captured = capsys.readouterr()
     assert missing in captured.err

@@ -2,9 +2,25 @@
 
 from dataclasses import replace
 
+import numpy as np
+
 from rateloom.calculation import elements
 from rateloom.calculation.record import Calculation
 from rateloom.remarks import Remark
+
+LARGEST_ENERGY = 1e6
+"""[hartree]; that of an atom of uranium is 3e4."""
+LARGEST_FREQUENCY = 1e5
+"""[cm-1]; that of H2 is 4.4e3."""
+LARGEST_COORDINATE = 1e4
+"""[angstrom]."""
+LARGEST_MASS = 1e3
+"""[u]."""
+LARGEST_GRADIENT = 1e6
+"""[hartree/bohr]."""
+LARGEST_SPIN = 1e4
+LARGEST_CHARGE = 1e3
+"""[elementary charges]."""
 
 
 def check(record: Calculation, *, cut: bool, charge_printed: bool) -> Calculation:
@@ -12,6 +28,36 @@ def check(record: Calculation, *, cut: bool, charge_printed: bool) -> Calculatio
     record, spin = check_electrons(record) if charge_printed else (record, (no_charge(record),))
     remarks = (*record.remarks, *spin, *unfinished(record, cut), *not_converged(record))
     return replace(record, remarks=remarks)
+
+
+def absurd(record: Calculation) -> str:
+    """Name what no molecule has, empty where there is nothing: a damaged number, not chemistry, is behind it."""
+    geometries = [record.geometry_angstrom, record.optimised_geometry_angstrom]
+    coordinates = np.concatenate([geometry for geometry in geometries if geometry is not None])
+    groups = (
+        ("an energy", "hartree", LARGEST_ENERGY, list(record.energies_hartree.values())),
+        ("a frequency", "cm-1", LARGEST_FREQUENCY, record.frequencies_per_cm),
+        (
+            "a coordinate",
+            "angstrom",
+            LARGEST_COORDINATE,
+            coordinates,
+        ),
+        ("a mass", "u", LARGEST_MASS, record.masses_u),
+        ("a second derivative", "hartree/bohr2", np.finfo(float).max, record.hessian),
+        ("a gradient", "hartree/bohr", LARGEST_GRADIENT, record.largest_gradient),
+        ("a spin expectation value", "(no unit)", LARGEST_SPIN, record.spin_squared),
+        ("a charge", "e", LARGEST_CHARGE, record.charge),
+    )
+    for name, unit, limit, values in groups:
+        if values is None:
+            continue
+        numbers = np.ravel(np.asarray(values, dtype=np.float64))
+        # Written so that NaN fails.
+        wrong = numbers[~(np.abs(numbers) <= limit)]
+        if len(wrong):
+            return f"{name} of {wrong[0]:g} {unit}"
+    return ""
 
 
 def no_charge(record: Calculation) -> Remark:

@@ -1,9 +1,15 @@
 """One output file to one record: bytes, text, lines, cclib, record, checks."""
 
+from collections.abc import Iterable
+from typing import TYPE_CHECKING
+
 from rateloom.calculation.output import LARGEST, Output, load, open_output
 from rateloom.calculation.programs import PROGRAMS, Program, recognise
 from rateloom.calculation.record import Calculation
 from rateloom.errors import CalculationError
+
+if TYPE_CHECKING:
+    from rateloom.calculation.track import Track
 
 
 def read_calculation(
@@ -40,16 +46,51 @@ def read_calculation(
         raise unknown(output)
     # cclib takes a second to load: commands that read no file shall not wait for it.
     from rateloom.calculation.build import build
+    from rateloom.calculation.checks import absurd
+
+    track = follow_sieved(output, program) if sieve else follow_all(output, program)
+    try:
+        record = build(output, program, track)
+    except (ArithmeticError, AttributeError, LookupError, TypeError, ValueError) as error:
+        raise contradictory(output, program, error) from error
+    if fault := absurd(record):
+        raise impossible(output, program, fault)
+    return record
+
+
+def follow_all(output: Output, program: Program) -> "Track":
+    """Let cclib look at every line."""
+    from rateloom.calculation.track import follow
+
+    return follow(output, program, numbered(output, program))
+
+
+def follow_sieved(output: Output, program: Program) -> "Track":
+    """Keep idle lines from cclib; should it stop for want of one of them, let it look at every line."""
     from rateloom.calculation.sieve import sieve_of
     from rateloom.calculation.track import follow
 
-    mend = program.mend
-    lines = output.lines() if mend is None else [mend(line) for line in output.lines()]
-    track = follow(output, program, enumerate(lines, start=1), sieve_of(program) if sieve else None)
+    idle = sieve_of(program)
+    if idle is None:
+        return follow_all(output, program)
     try:
-        return build(output, program, track)
-    except (ArithmeticError, AttributeError, LookupError, TypeError, ValueError) as error:
-        raise contradictory(output, program, error) from error
+        return follow(output, program, numbered(output, program), idle)
+    except CalculationError:
+        return follow_all(output, program)
+
+
+def numbered(output: Output, program: Program) -> Iterable[tuple[int, str]]:
+    """Give the lines, mended for cclib, with their numbers."""
+    lines = output.lines()
+    return enumerate(lines if program.mend is None else map(program.mend, lines), start=1)
+
+
+def impossible(output: Output, program: Program, fault: str) -> CalculationError:
+    """Say that a number cannot be."""
+    return CalculationError(
+        f"{output.name}: this {program.name} output prints {fault}, which no molecule has. "
+        "Look there whether the file is damaged or the calculation diverged."
+    )
 
 
 def contradictory(output: Output, program: Program, error: Exception) -> CalculationError:

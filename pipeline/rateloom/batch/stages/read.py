@@ -12,8 +12,11 @@ from rateloom.remarks import Remark
 class Reading:
     """How files are read."""
 
+    sieve: bool = True
+    """Whether lines at which nothing needed begins are kept from cclib, which changes no record."""
 
-def read(_options: Reading, path: str, data: bytes, *, largest: int | None) -> Outcome:
+
+def read(options: Reading, path: str, data: bytes, *, largest: int | None) -> Outcome:
     """Read one output file.
 
     Raises
@@ -22,7 +25,7 @@ def read(_options: Reading, path: str, data: bytes, *, largest: int | None) -> O
         It unpacks to more than ``largest`` bytes: a matter of the run's limits, so that no result is kept.
     """
     try:
-        calculation = read_calculation(path, data, largest=largest)
+        calculation = read_calculation(path, data, largest=largest, sieve=options.sieve)
     except TooLargeError:
         raise
     except CalculationError as error:

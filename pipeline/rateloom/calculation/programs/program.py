@@ -66,7 +66,7 @@ class Program:
     mend: Callable[[str], str] | None = None
     """Corrects one line before cclib sees it; the number of lines stays."""
     idle_rows: tuple[str, ...] = ()
-    """Labels of rows of numbers in tables, at the beginning of a line, at which nothing begins that cclib must read."""
+    """Labels, at the beginning of a line, of rows of numbers at which nothing begins that cclib must read."""
     idle_headings: tuple[str, ...] = ()
     """Beginnings of lines that head what cclib would read and no record needs."""
     masses: str = ""

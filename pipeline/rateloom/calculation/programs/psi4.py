@@ -66,7 +66,7 @@ PSI4 = Program(
     ends=r"^\*\*\* P(?:si|SI)4 exiting successfully",
     fails=r"^\*\*\* P(?:si|SI)4 encountered an error",
     level=level,
-    idle_headings=(r" *Properties will be evaluated at",),
+    idle_headings=(r" *(?:Properties will be evaluated at|Multipole Moments:)",),
     energies=(
         ("SCF", r"^\s*@(?:DF-)?(?:R|U|RO|CU)HF Final Energy:\s*" + NUMBER),
         ("DFT", r"^\s*@(?:DF-)?(?:R|U)KS Final Energy:\s*" + NUMBER),

@@ -11,7 +11,7 @@ from functools import lru_cache
 
 TOKEN = re.compile(r"\\.|\[\^?\]?[^\]]*\]|\{[\d,]+\}|.", re.DOTALL)
 """An escape, a set, a count, or one character of an expression."""
-LEADING = re.compile(r"\^(?:\\s[*+])?")
+LEADING = re.compile(r"\^(?:\\s\*)?")
 OVER_LINES = ("\\s", "\\n", "\\W", "\\D", "[^")
 """What may match a line feed, in a set too."""
 SHORTEST = 3

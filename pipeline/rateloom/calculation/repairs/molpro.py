@@ -16,4 +16,8 @@ class RepairedMolpro(Molpro):
         if "GRADIENT FOR STATE" in words:
             # Not needed here, and without a geometry before it cclib stops.
             return
+        known = len(self.__dict__.get("vibfreqs", ()))
         super().extract(inputfile, line)
+        if words.startswith("Normal Modes of imaginary"):
+            # Printed, and read, without a sign.
+            self.vibfreqs[known:] = [-abs(frequency) for frequency in self.vibfreqs[known:]]
