@@ -95,7 +95,14 @@ class Batch:
         """Start a run in a process group of its own."""
         command = [sys.executable, *program, "run", str(self.job), *options]
         return subprocess.Popen(
-            command, stdout=subprocess.PIPE, stderr=subprocess.PIPE, text=True, start_new_session=True, **more
+            command,
+            stdout=subprocess.PIPE,
+            stderr=subprocess.PIPE,
+            text=True,
+            start_new_session=True,
+            # A shell may have started the tests with interrupts ignored, which a child would inherit.
+            preexec_fn=lambda: signal.signal(signal.SIGINT, signal.SIG_DFL),
+            **more,
         )
 
 

@@ -66,8 +66,9 @@ class Calculation:
     energy: bool = True
     imaginary_modes: int = 0
     truncated_from: str = ""
-    guess: str = ""
-    directives: str = ""
+    cartesian: bool = False
+    driver: str = ""
+    energy_options: str = ""
 
 
 def read_table(path: Path) -> tuple[Level, list[Calculation]]:
@@ -90,11 +91,9 @@ def read_table(path: Path) -> tuple[Level, list[Calculation]]:
 def nwchem_input(level: Level, calc: Calculation) -> str:
     """Return the NWChem input: all jobs of one species in one file."""
     options = "units angstrom"
-    if calc.symmetry:
+    if calc.symmetry or calc.cartesian or calc.kind in ("saddle", "guess"):
         options += " noautoz"
-    elif calc.kind in ("saddle", "guess"):
-        options += " noautoz noautosym"
-    else:
+    if not calc.symmetry:
         options += " noautosym"
     geometry = calc.geometry.strip("\n")
     if calc.symmetry:
@@ -109,8 +108,6 @@ def nwchem_input(level: Level, calc: Calculation) -> str:
         f"dft\n{spin}  xc {level.functional}\n  grid {level.grid}\n"
         "  convergence energy 1e-8 density 1e-6 gradient 1e-5\n  iterations 100\nend",
     ]
-    if calc.directives:
-        lines.append(calc.directives.strip("\n"))
     hessian = "  inhess 2\n" if calc.kind == "saddle" else ""
     if tasks[0] == "hessian":
         # The Hessian of the guess only starts the search: a loose one does.
@@ -119,7 +116,7 @@ def nwchem_input(level: Level, calc: Calculation) -> str:
         tasks = tasks[1:]
     lines.append(
         f"driver\n{hessian}  gmax 0.00003\n  grms 0.00002\n  xmax 0.0006\n  xrms 0.0004\n"
-        f"  maxiter {calc.max_steps}\nend"
+        f"  maxiter {calc.max_steps}\n{calc.driver}end"
     )
     lines += [f"task dft {task}" for task in tasks]
     return "\n".join(lines) + "\n"
@@ -143,7 +140,7 @@ def psi4_input(level: Level, calc: Calculation, atoms: Sequence[Atom]) -> str:
         "  units angstrom\n  no_com\n  no_reorient\n}\n\n"
         f"set {{\n  basis {level.energy_basis}\n  reference {reference}\n  freeze_core true\n"
         "  scf_type pk\n  e_convergence 1e-8\n  d_convergence 1e-8\n  r_convergence 1e-6\n"
-        "  maxiter 150\n}\n\n"
+        f"  maxiter 150\n{calc.energy_options}}}\n\n"
         "energy('ccsd(t)')\n"
     )
 
