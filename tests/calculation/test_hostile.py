@@ -178,9 +178,12 @@ def ends_inside_a_job(text: str, place: int) -> bool:
     program = recognise(text)
     assert program is not None
     ends = [match.end() for match in matches(program.ends, text)]
-    begins = [match.start() for match in matches(program.begins, text)] if program.begins else []
+    if not ends or place >= ends[-1]:
+        return False
     last_end = max((end for end in ends if end <= place), default=0)
-    return place < (ends[-1] if ends else 0) and (last_end == 0 or any(last_end <= begin < place for begin in begins))
+    if last_end == 0 or not program.begins:
+        return True
+    return any(last_end <= match.start() < place for match in matches(program.begins, text))
 
 
 def check_sound(record: Calculation, case: str) -> None:
@@ -238,7 +241,7 @@ def test_absurd_energy_is_no_energy(text_of: Callable[[str], str], number: str, 
 
 def test_absurd_frequency_is_no_frequency(text_of: Callable[[str], str]) -> None:
     text = text_of("NWChem7.0.2/h2o_several_tasks.out.gz")
-    changed = re.sub(r"^( P\.Frequency .*) \d+\.\d\d$", r"\1 9e9", text, flags=re.M)
+    changed = text.replace("  4097.92", "  9000000000.00")
 
     with pytest.raises(CalculationError, match=re.escape("a frequency of 9e+09 cm-1")):
         read_calculation("water.out", changed.encode())

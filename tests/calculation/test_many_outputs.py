@@ -163,3 +163,23 @@ def test_last_of_several_jobs_is_taken(many_outputs: Path) -> None:
 )
 def test_level_of_theory_is_spelled_alike(many_outputs: Path, name: str, level: str) -> None:
     assert str(read_calculation(str(many_outputs / name)).level) == level
+
+
+def test_short_printing_leaves_the_multiplicity_to_the_input(many_outputs: Path) -> None:
+    record = read_calculation(str(many_outputs / "ORCA/ORCA5.0__1177.out.gz"))
+
+    assert (record.charge, record.multiplicity) == (1, 2)  # `* xyz 1 2` of the input; CH4+ has nine electrons
+
+
+@pytest.mark.parametrize("name", ["CFOUR/basicCFOUR2.1__dvb_ir.c4.gz", "ADF/ADF2004.01__dvb_ir.adfout.gz"])
+def test_end_of_a_step_is_not_the_end_of_the_output(many_outputs: Path, name: str) -> None:
+    # Both print an end for each of their steps, or copy that of an earlier run.
+    text = text_of(name)
+    step = {"CFOUR": "@CHECKOUT-I, Total execution time", "ADF": "  NORMAL TERMINATION"}[name.split("/")[0]]
+    place = text.index("\n", text.rindex(step, 0, len(text) // 2))
+
+    try:
+        record = read_calculation(str(many_outputs / name), text[:place].encode())
+    except CalculationError:
+        return
+    assert not record.finished

@@ -21,5 +21,5 @@ __all__ = [
     "read_calculation",
 ]
 
-READER_VERSION = 2
+READER_VERSION = 3
 """Raised by hand when reading the same file gives another record."""

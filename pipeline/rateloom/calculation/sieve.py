@@ -11,7 +11,7 @@ from collections.abc import Callable
 
 from rateloom.calculation.programs.program import Program
 
-ROWS = r"(?=[^A-Za-z\n]*\d\.\d)(?:[^A-Za-z\n]|[A-Za-z](?![A-Za-z]))*$"
+ROWS = r"(?=[^A-Za-z\n]*+(?:[A-Za-z][^A-Za-z\n]++)*+$)[^\n]*?\d\.\d"
 """Numbers, one of them decimal, with single letters at most (exponents, element symbols)."""
 Sieve = Callable[[str], object]
 """A line to something true where it is idle."""

@@ -68,21 +68,17 @@ class Watch:
     def __init__(self, track: Track) -> None:
         self.track = track
         self.seen: dict[str, tuple[Any, int]] = {}
-        self.present: tuple[str, ...] = ()
-        self.signature: tuple[int, str] = (0, "")
+        self.newest = (0, "")
 
     def note(self, found: dict[str, Any], begin: int, end: int) -> None:
         """Compare with the line before; both lines counted from 1."""
-        # A new attribute is the last of its dictionary; most lines bring none.
-        signature = len(found), next(reversed(found))
-        if signature != self.signature:
-            self.signature = signature
-            self.present = tuple(name for name in WATCHED if name in found)
-        for name in self.present:
+        if self.nothing_new(found):
+            return
+        for name in WATCHED:
             value = found.get(name)
             if value is None:
                 continue
-            size = len(value) if hasattr(value, "__len__") else 0
+            size = size_of(value)
             former, former_size = self.seen.get(name, (None, 0))
             if former is value and former_size == size:
                 continue
@@ -90,12 +86,29 @@ class Watch:
             entries = self.track.entries[name]
             if name in GROWING:
                 # A list that was begun anew (cclib drops some between two jobs) holds only new entries.
-                known = former_size if former is value and former_size < size else 0
+                known = former_size if former is value and 0 <= former_size < size else 0
                 entries.extend(Entry(begin, end, item) for item in value[known:])
             elif former is value:
                 entries[-1].end = end
             else:
                 entries.append(Entry(begin, end, value))
+
+    def nothing_new(self, found: dict[str, Any]) -> bool:
+        """Tell, as after most lines, that no attribute came (it would be the last of the dictionary) or changed."""
+        newest = len(found), next(reversed(found))
+        if newest != self.newest:
+            self.newest = newest
+            return False
+        for name, (former, size) in self.seen.items():
+            value = found.get(name)
+            if value is not former or (size >= 0 and len(value) != size):
+                return False
+        return True
+
+
+def size_of(value: object) -> int:
+    """Give the number of entries of a value, -1 for one that has none."""
+    return len(value) if hasattr(value, "__len__") else -1
 
 
 class Lines(FileWrapper):

@@ -146,10 +146,7 @@ NWCHEM = Program(
     fails=r"^ *For more information see the NWChem manual|There is an error in the input file"
     r"|Received an Error in Communication",
     level=level,
-    idle_headings=(
-        r" *DFT Final (?:Alpha |Beta )?Molecular Orbital Analysis",
-        r" *ROHF Final Molecular Orbital Analysis",
-    ),
+    idle_rows=(r" *(?:MO Center=|overlap|alpha|beta) ",),
     energies=(
         ("SCF", r"^ +Total SCF energy\s*=\s*" + NUMBER),
         ("DFT", r"^ +Total DFT energy\s*=\s*" + NUMBER),

@@ -22,14 +22,17 @@ OTHERS = (
         name="ADF",
         reader="cclib.parser.adfparser:ADF",
         phrases=("Amsterdam Density Functional  (ADF)",),
-        ends=r"NORMAL TERMINATION",
+        begins=r"Amsterdam Density Functional  \(ADF\)",
+        # The log of an earlier run of the same job may be copied in front.
+        ends=r"A D F   E X I T *\n *NORMAL TERMINATION",
         level=level,
     ),
     Program(
         name="CFOUR",
         reader="cclib.parser.cfourparser:CFOUR",
         phrases=("* CFOUR Coupled-Cluster techniques for Computational Chemistry *",),
-        ends=r"^ *--executable xjoda finished|This computation required|@CHECKOUT-I, Total execution time",
+        # Each of its programs prints its own end before.
+        ends=r"^ *This computation required",
         level=level,
     ),
     Program(
