@@ -108,7 +108,7 @@ def test_an_output_folder_that_is_a_file_is_a_message(job: Path, capsys: pytest.
 def test_a_fault_of_the_program_is_status_3_and_no_traceback(
     job: Path, capsys: pytest.CaptureFixture[str], monkeypatch: pytest.MonkeyPatch, tmp_path: Path
 ) -> None:
-    monkeypatch.setattr("rateloom.batch.run.graph_of", lambda _job: 1 / 0)
+    monkeypatch.setattr("rateloom.batch.run.graph_of", lambda _job, **_options: 1 / 0)
     monkeypatch.setattr("tempfile.tempdir", str(tmp_path))
 
     assert main(["run", str(job)]) == 3

@@ -17,6 +17,7 @@ def audit_job(
     workers: int = 1,
     scheduler: str | None = None,
     limits: FileLimits = DEFAULT_LIMITS,
+    sieve: bool = True,
     progress: Progress,
 ) -> tuple[Finding, ...]:
     """Check every calculation, species and reaction of a job.
@@ -33,6 +34,8 @@ def audit_job(
         Address of a Dask scheduler whose workers compute instead.
     limits
         Of time and size, beyond which a file counts as unreadable.
+    sieve
+        Whether lines at which nothing needed begins are kept from cclib.
     progress
         Called after each node.
 
@@ -47,7 +50,7 @@ def audit_job(
         The job, the store or the cluster cannot be used.
     """
     job = load(path, output)
-    graph = graph_of(job, rates=False)
+    graph = graph_of(job, rates=False, sieve=sieve)
     with open_store(Path(job.output)) as store:
         evaluated = bring_up_to_date(
             graph,

@@ -78,16 +78,17 @@ class JobGraph:
     reaction_rows: dict[str, str] = field(default_factory=dict)
 
 
-def graph_of(job: Job, *, rates: bool = True) -> JobGraph:
-    """Lay out the stages of a job, or those alone that read and check."""
-    return _Builder(job, rates=rates).build()
+def graph_of(job: Job, *, rates: bool = True, sieve: bool = True) -> JobGraph:
+    """Lay out the stages of a job, or those alone that read and check; with or without the sieve before cclib."""
+    return _Builder(job, rates=rates, sieve=sieve).build()
 
 
 class _Builder:
     """Adds nodes in the order of the job file."""
 
-    def __init__(self, job: Job, *, rates: bool) -> None:
+    def __init__(self, job: Job, *, rates: bool, sieve: bool) -> None:
         self.job = job
+        self.reading = Reading(sieve=sieve)
         self.rates = rates
         self.graph = JobGraph()
         self.folder = Path(job.path).parent
@@ -120,7 +121,7 @@ class _Builder:
 
     def _read(self, entity: Entity, path: str) -> str:
         shown = relpath(path, self.folder)
-        node = self._add(f"read {shown}", "read", Reading(), file=path)
+        node = self._add(f"read {shown}", "read", self.reading, file=path)
         self._speaks_of(entity.kind, entity.name, node, f"{shown}: ")
         return node
 

@@ -26,6 +26,7 @@ def run_job(
     workers: int = 1,
     scheduler: str | None = None,
     limits: FileLimits = DEFAULT_LIMITS,
+    sieve: bool = True,
     progress: Progress,
 ) -> Summary:
     """Bring the output folder of a job up to date.
@@ -42,6 +43,8 @@ def run_job(
         Address of a Dask scheduler whose workers compute instead.
     limits
         Of time and size, beyond which a file counts as unreadable.
+    sieve
+        Whether lines at which nothing needed begins are kept from cclib.
     progress
         Called after each node.
 
@@ -57,7 +60,7 @@ def run_job(
     """
     begun = time.monotonic()
     job = load(path, output)
-    graph = graph_of(job)
+    graph = graph_of(job, sieve=sieve)
     folder = Path(job.output)
     with open_store(folder) as store:
         known_before = set(store.past())

@@ -44,6 +44,7 @@ def run(args: argparse.Namespace) -> int:
             workers=workers_of(args),
             scheduler=args.scheduler,
             limits=FileLimits(args.seconds_per_file, bytes_of(args)),
+            sieve=args.sieve,
             progress=report,
         )
     shown = [finding for finding in findings if not wanted or finding.code in wanted]

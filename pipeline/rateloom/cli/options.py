@@ -24,6 +24,12 @@ def add_job_options(parser: argparse.ArgumentParser) -> None:
     parser.add_argument("--output", metavar="DIR", help="use this folder instead of the one that the job file names")
     add_size_option(parser)
     parser.add_argument(
+        "--no-sieve",
+        dest="sieve",
+        action="store_false",
+        help="show cclib every line of an output: slower, the same records",
+    )
+    parser.add_argument(
         "--seconds-per-file",
         type=_count,
         default=SECONDS_PER_FILE,

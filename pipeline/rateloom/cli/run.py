@@ -23,7 +23,7 @@ def run(args: argparse.Namespace) -> int:
     """Run a job, print its summary."""
     from rateloom.batch import unchanged_run
 
-    summary = unchanged_run(args.job, args.output)
+    summary = unchanged_run(args.job, args.output) if args.sieve else None
     if summary is None:
         from rateloom.batch import FileLimits, run_job
 
@@ -34,6 +34,7 @@ def run(args: argparse.Namespace) -> int:
                 workers=workers_of(args),
                 scheduler=args.scheduler,
                 limits=FileLimits(args.seconds_per_file, bytes_of(args)),
+                sieve=args.sieve,
                 progress=report,
             )
     for fault in summary.faults:
