@@ -21,35 +21,26 @@ REACTIONS = {
     "ts_h2_o": "h2 + o -> oh + h",
     "ts_h2_oh": "h2 + oh -> h2o + h",
     "ts_h2o_o": "h2o + o -> oh + oh",
-    "ts_h2o_oh": "h2o + oh -> oh + h2o",
     "ts_nh3_h": "nh3 + h -> nh2 + h2",
     "ts_nh3_o": "nh3 + o -> nh2 + oh",
     "ts_nh3_oh": "nh3 + oh -> nh2 + h2o",
-    "ts_nh3_nh2": "nh3 + nh2 -> nh2 + nh3",
     "ts_ch4_h": "ch4 + h -> ch3 + h2",
-    "ts_ch4_o": "ch4 + o -> ch3 + oh",
-    "ts_ch4_oh": "ch4 + oh -> ch3 + h2o",
-    "ts_ch4_nh2": "ch4 + nh2 -> ch3 + nh3",
-    "ts_ch4_ch3": "ch4 + ch3 -> ch3 + ch4",
     "ts_ch3oh_h_c": "ch3oh + h -> ch2oh + h2",
     "ts_ch3oh_h_o": "ch3oh + h -> ch3o + h2",
     "ts_ch2o_h": "ch2o + h -> hco + h2",
-    "ts_ch2o_o": "ch2o + o -> hco + oh",
-    "ts_ch2o_nh2": "ch2o + nh2 -> hco + nh3",
-    "ts_ch2o_ch3": "ch2o + ch3 -> hco + ch4",
     "ts_ch3nh2_h_c": "ch3nh2 + h -> ch2nh2 + h2",
-    "ts_ch3nh2_h_n": "ch3nh2 + h -> ch3nh + h2",
     "ts_h2o2_h": "h2o2 + h -> ho2 + h2",
-    "ts_h2o2_h_oh": "h2o2 + h -> h2o + oh",
-    "ts_hno_h": "hno + h -> no + h2",
-    "ts_hno_nh2": "hno + nh2 -> no + nh3",
     "ts_n2h2_h": "n2h2_trans + h -> nnh + h2",
     "ts_n2h2_isom": "n2h2_trans -> n2h2_cis",
     "ts_nnh_diss": "nnh -> n2 + h",
     "ts_hco_diss": "hco -> h + co",
     "ts_ch3o_diss": "ch3o -> ch2o + h",
-    "ts_ch3o_isom": "ch3o -> ch2oh",
     "ts_n2o_h": "n2o + h -> n2 + oh",
+    "ts_hcn_isom": "hcn -> hnc",
+    "ts_nh_h": "nh + h -> n + h2",
+    "ts_nh2_h": "nh2 + h -> nh + h2",
+    "ts_ch3_h": "ch3 + h -> ch2 + h2",
+    "ts_ch2o_diss": "ch2o -> h2 + co",
 }
 
 
@@ -62,7 +53,7 @@ class Members:
     products: tuple[Calculation, ...]
 
 
-ATOMS = ("h", "o")  # need no file: an atom has no geometry to speak of
+ATOMS = ("h", "n", "o")  # need no file: an atom has no geometry to speak of
 
 
 def _is_there(stem: str) -> bool:
@@ -123,7 +114,7 @@ def test_every_saddle_of_the_demo_is_confirmed(saddle: str) -> None:
 
 
 def test_no_saddle_of_the_demo_serves_another_reaction() -> None:
-    assert len(COMPLETE) >= 8
+    assert len(COMPLETE) == len(REACTIONS) == 24
     for ours, other in permutations(COMPLETE, 2):
         members, wrong = _members(other), _members(ours).saddle
         verdict = judge_saddle(wrong, members.reactants, members.products)
