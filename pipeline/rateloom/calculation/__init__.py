@@ -8,10 +8,12 @@ above: no scaling, no symmetry, no judgement beyond whether the file is complete
 
 from rateloom.calculation.description import as_json_dict, describe
 from rateloom.calculation.given import given_calculation
+from rateloom.calculation.motion import LINEAR
 from rateloom.calculation.reading import read_calculation
 from rateloom.calculation.record import Calculation, Level
 
 __all__ = [
+    "LINEAR",
     "READER_VERSION",
     "Calculation",
     "Level",

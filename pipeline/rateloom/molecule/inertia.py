@@ -4,10 +4,10 @@ import numpy as np
 from scipy.constants import angstrom, h
 
 from rateloom.arrays import FloatArray
+from rateloom.calculation import LINEAR
 
-LINEAR_TOLERANCE = 0.03 * angstrom
-"""Largest distance of an atom from the axis of a molecule that counts as linear [m]: six standard deviations of a
-noise of 5e-3 angstrom per coordinate, and about 4 degrees of bend in a triatomic."""
+LINEAR_TOLERANCE = LINEAR * angstrom
+"""Largest distance of an atom from the axis of a molecule that counts as linear [m]: that of the reading room."""
 
 
 def centre_of_mass(masses: FloatArray, positions: FloatArray) -> FloatArray:
